@@ -1,0 +1,108 @@
+// wend/arbiters/blend.hpp - convex combinations of fields: by a signal, or in fixed shares.
+#pragma once
+
+#include "wend/arbiters/guard.hpp"
+#include "wend/config.hpp"
+#include "wend/field.hpp"
+
+namespace wend::inline v0 {
+
+/// A weight that rises from 0 where the signal is at `low` to 1 where it is at `high`, straight in between. Unit of the
+/// signal, low < high. 0 for a signal that is not a number.
+template <typename Signal>
+struct ramp_weight {
+  [[no_unique_address]] Signal signal;
+  Parameter low;
+  Parameter per_unit;
+
+  template <Number S, int N>
+  [[nodiscard]] constexpr S operator()(Percept<S, N> const& percept) const noexcept {
+    return clamp(S((signal(percept) - S(low)) * S(per_unit)), S(0.0F), S(1.0F));
+  }
+};
+
+/// ramp(clearance, 0.5F, 1.2F): 0 at 0.5 m of clearance and below, 1 at 1.2 m and above.
+template <typename Signal>
+[[nodiscard]] constexpr ramp_weight<Signal> ramp(Signal signal, Parameter low, Parameter high) noexcept {
+  detail::check_signal<Signal>();
+  WEND_ASSERT(low < high);
+  return {signal, low, 1.0F / (high - low)};
+}
+
+/// A constant weight.
+struct fixed_weight {
+  Parameter share;
+
+  template <Number S, int N>
+  [[nodiscard]] constexpr S operator()(Percept<S, N> const&) const noexcept {
+    return S(share);
+  }
+};
+
+/// (1 - w) low + w high, each course counted as its direction times its confidence. The direction is that of the sum.
+/// The confidence is its length: with two sure fields the mean resultant length of what is blended (Mardia and Jupp
+/// 2000, eq. 2.2.4), 1 where they agree and 0 where they cancel, and then there is no opinion. A field without an
+/// opinion gives up its share of the confidence and leaves the direction to the other.
+template <typename Weight, typename Low, typename High>
+struct blended_field {
+  [[no_unique_address]] Weight weight;
+  [[no_unique_address]] Low low;
+  [[no_unique_address]] High high;
+
+  template <Number S>
+  struct Memory {
+    [[no_unique_address]] detail::PlacedMemory<Low, S, blended_field, 0> low;
+    [[no_unique_address]] detail::PlacedMemory<High, S, blended_field, 1> high;
+  };
+
+  template <Number S, int N>
+  [[nodiscard]] constexpr Course<S> operator()(Percept<S, N> const& percept, Memory<S>& memory) const noexcept {
+    S const w = weight(percept);
+    Course<S> const at_low = evaluate(low, percept, memory.low);
+    Course<S> const at_high = evaluate(high, percept, memory.high);
+    Vec2<S> const sum = scaled(at_low.direction, S((S(1.0F) - w) * at_low.confidence)) +
+                        scaled(at_high.direction, S(w * at_high.confidence));
+    Polar<S> const way = polar(sum);
+    return {way.direction, least(way.length, S(1.0F))};
+  }
+};
+
+/// A field with its share of a blend.
+template <typename Field>
+struct Share {
+  Parameter weight;
+  [[no_unique_address]] Field field;
+};
+
+/// share(2.0F, toward_goal{}): weights count relative to each other; none may be negative, and not all zero.
+template <typename Field>
+[[nodiscard]] constexpr Share<Field> share(Parameter weight, Field field) noexcept {
+  detail::check_field<Field, float>();
+  WEND_ASSERT(weight >= 0.0F);
+  return {weight, field};
+}
+
+/// blend(ramp(clearance, 0.5F, 1.2F), away_from_discs{}, toward_goal{}): the first field where the ramp is 0, the second
+/// where it is 1.
+template <typename Signal, typename Low, typename High>
+[[nodiscard]] constexpr blended_field<ramp_weight<Signal>, Low, High> blend(ramp_weight<Signal> weight, Low low,
+                                                                             High high) noexcept {
+  detail::check_field<Low, float>();
+  detail::check_field<High, float>();
+  return {weight, low, high};
+}
+
+/// blend(share(1.0F, a), share(2.0F, b), ...): fixed shares of as many fields as you like.
+template <typename A>
+[[nodiscard]] constexpr A blend(Share<A> a) noexcept {
+  return a.field;
+}
+template <typename A, typename... Rest>
+[[nodiscard]] constexpr auto blend(Share<A> a, Share<Rest>... rest) noexcept {
+  Parameter const others = (rest.weight + ...);
+  Parameter const all = a.weight + others;
+  return blended_field<fixed_weight, A, decltype(blend(rest...))>{
+      {all > 0.0F ? others / all : 0.5F}, a.field, blend(rest...)};
+}
+
+}  // namespace wend::inline v0

@@ -1,0 +1,56 @@
+// wend/arbiters/signal.hpp - signals: what a guard or a ramp looks at. A signal is a functor from a percept to a number.
+#pragma once
+
+#include "wend/number.hpp"
+#include "wend/percept.hpp"
+#include "wend/plane.hpp"
+
+namespace wend::inline v0 {
+
+namespace signals {
+
+struct clearance {
+  template <Number S, int N>
+  [[nodiscard]] constexpr S operator()(Percept<S, N> const& percept) const noexcept {
+    return percept.clearance;
+  }
+};
+
+struct goal_distance {
+  template <Number S, int N>
+  [[nodiscard]] constexpr S operator()(Percept<S, N> const& percept) const noexcept {
+    return percept.goal_distance;
+  }
+};
+
+struct heading_error {
+  template <Number S, int N>
+  [[nodiscard]] constexpr S operator()(Percept<S, N> const& percept) const noexcept {
+    return length(Vec2<S>(percept.goal_direction - percept.pose.heading));
+  }
+};
+
+struct disc_before_goal {
+  template <Number S, int N>
+  [[nodiscard]] constexpr S operator()(Percept<S, N> const& percept) const noexcept {
+    return -dot(percept.away, percept.goal_direction);
+  }
+};
+
+}  // namespace signals
+
+/// Metres from the robot's edge to the nearest disc's; negative when they overlap; far_away when there is none.
+inline constexpr signals::clearance clearance{};
+
+/// Metres from the robot's centre to the goal.
+inline constexpr signals::goal_distance goal_distance{};
+
+/// How far the nose is off the goal's direction, as the chord 2 sin(|angle| / 2), in [0, 2]: within 1 % of the angle in
+/// radians up to 0.5. Give thresholds as chord(angle). 1 on the goal, where there is no direction.
+inline constexpr signals::heading_error heading_error{};
+
+/// Cosine of the angle between the directions to the nearest disc and to the goal: 1 when the disc stands straight
+/// before the goal, 0 abeam, -1 when the goal lies straight away from it. 0 without a disc's or a goal's direction.
+inline constexpr signals::disc_before_goal disc_before_goal{};
+
+}  // namespace wend::inline v0

@@ -1,0 +1,18 @@
+// wend/fields/away_from_discs.hpp - straight away from the nearest disc.
+#pragma once
+
+#include "wend/field.hpp"
+
+namespace wend::inline v0 {
+
+/// Away from the nearest disc: the direction to it plus pi, with confidence 1. No opinion where there is no disc, or at
+/// the very centre of one.
+struct away_from_discs {
+  template <Number S, int N>
+  [[nodiscard]] constexpr Course<S> operator()(Percept<S, N> const& percept) const noexcept {
+    mask_t<S> const some = sees_a_disc(percept) && dot(percept.away, percept.away) > S(0.0F);
+    return {select(some, percept.away, zero2<S>()), select(some, S(1.0F), S(0.0F))};
+  }
+};
+
+}  // namespace wend::inline v0

@@ -1,0 +1,53 @@
+// wend/fields/potential_field.hpp - attraction by the goal, repulsion by every disc.
+#pragma once
+
+#include "wend/field.hpp"
+
+namespace wend::inline v0 {
+
+/// The artificial potential field of Khatib (1986), Int. J. Robotics Research 5(1): the goal attracts with
+/// U = attraction/2 * d^2, and each disc nearer than `influence` repels with U = repulsion/2 * (1/rho - 1/influence)^2
+/// (his FIRAS function), rho being the clearance from the robot's edge. Its known faults are part of it: it comes to
+/// rest where the two cancel (a goal straight behind a disc), and it cannot reach a goal that stands too near a disc.
+struct potential_field {
+  Parameter attraction = 1.0F;        ///< newton a metre, if you think of it as a force
+  Parameter repulsion = 0.05F;        ///< newton square metre
+  Parameter influence = 1.0F;         ///< metres: beyond, a disc is not felt
+  Parameter closest = 0.01F;          ///< metres: clearance below which the repulsion grows no further
+
+  /// The sum of the forces, and the sum of their sizes.
+  template <Number S>
+  struct Force {
+    Vec2<S> sum;
+    S sum_of_sizes;
+  };
+
+  /// -grad U (Khatib's eq. 10 and 17). Towards the goal -attraction * (x - goal); away from a disc
+  /// repulsion * (1/rho - 1/influence) / rho^2.
+  template <Number S, int N>
+  [[nodiscard]] constexpr Force<S> force(Percept<S, N> const& percept) const noexcept {
+    S const pull = S(attraction) * percept.goal_distance;
+    Force<S> total{scaled(percept.goal_direction, pull), pull};
+    for (Disc<S> const& disc : percept.discs) {
+      Polar<S> const away = polar(Vec2<S>(percept.pose.position - disc.centre));
+      S const rho = greatest(S(away.length - disc.radius - percept.robot_radius), S(closest));
+      S const push = S(repulsion) * (S(1.0F) / rho - S(1.0F / influence)) / squared(rho);
+      S const felt = select(rho < S(influence), push, S(0.0F));
+      total.sum = total.sum + scaled(away.direction, felt);
+      total.sum_of_sizes = total.sum_of_sizes + felt;
+    }
+    return total;
+  }
+
+  /// The direction of the force. Confidence is the size of the sum over the sum of the sizes: near 0 the forces cancel.
+  template <Number S, int N>
+  [[nodiscard]] constexpr Course<S> operator()(Percept<S, N> const& percept) const noexcept {
+    Force<S> const total = force(percept);
+    Polar<S> const way = polar(total.sum);
+    mask_t<S> const some = way.length > S(0.0F);
+    S const share = way.length / select(some, total.sum_of_sizes, S(1.0F));
+    return {way.direction, select(some, least(share, S(1.0F)), S(0.0F))};
+  }
+};
+
+}  // namespace wend::inline v0

@@ -1,0 +1,121 @@
+// wend/lab/pack.hpp - W machines in lockstep: a number whose value is a row of SIMD lanes.
+#pragma once
+
+#include <cmath>
+#include <cstdint>
+#include <type_traits>
+
+#include <Eigen/Core>
+
+#include "wend/number.hpp"
+
+// g++ warns that wide vectors are returned in another way with AVX than without. It matters only between objects built
+// with different options, and nothing here is ever called out of line.
+#if defined(__GNUC__) && !defined(__clang__)
+#pragma GCC diagnostic push
+#pragma GCC diagnostic ignored "-Wpsabi"
+#endif
+
+namespace wend::inline v0::lab {
+
+namespace detail {
+
+// In the old notation, and over a type: g++ 12 drops a vector_size in a `using`, or on a type that is not a parameter.
+template <typename T, int W>
+struct Row {
+  typedef T type __attribute__((vector_size(W * sizeof(T))));
+};
+
+}  // namespace detail
+
+/// W single-precision numbers side by side (the compilers' vector extension, which g++ and clang share). Each lane does
+/// what a float alone would do, bit for bit, as long as the compiler may not contract a product and a sum into one
+/// rounding (-ffp-contract=off).
+template <int W>
+class Pack {
+  static_assert(W >= 2 && (W & (W - 1)) == 0, "wend: lab::Pack<W> needs a power of two of lanes; write lab::Pack<8>");
+
+  using Lanes = typename detail::Row<float, W>::type;
+  using Bits = typename detail::Row<std::int32_t, W>::type;
+
+ public:
+  /// One yes or no a lane.
+  class Mask {
+   public:
+    Mask() = default;
+    explicit Mask(Bits const& bits) noexcept : bits_(bits) {}
+    explicit Mask(bool all) noexcept : bits_(Bits{} - (all ? 1 : 0)) {}
+
+    [[nodiscard]] bool operator[](int lane) const noexcept { return bits_[lane] != 0; }
+    [[nodiscard]] friend Mask operator&&(Mask const& a, Mask const& b) noexcept { return Mask(a.bits_ & b.bits_); }
+    [[nodiscard]] friend Mask operator||(Mask const& a, Mask const& b) noexcept { return Mask(a.bits_ | b.bits_); }
+    [[nodiscard]] friend Mask operator!(Mask const& a) noexcept { return Mask(~a.bits_); }
+    [[nodiscard]] friend Mask select(Mask const& m, Mask const& a, Mask const& b) noexcept {
+      return Mask((m.bits_ & a.bits_) | (~m.bits_ & b.bits_));
+    }
+
+    [[nodiscard]] Bits const& bits() const noexcept { return bits_; }
+
+   private:
+    Bits bits_{};
+  };
+
+  Pack() = default;
+  explicit Pack(float all) noexcept : lanes_(Lanes{} + all) {}
+  /// Lane k is f(k).
+  template <typename F>
+    requires std::is_invocable_r_v<float, F, int>
+  explicit Pack(F const& f) noexcept {
+    for (int lane = 0; lane < W; ++lane) {
+      lanes_[lane] = f(lane);
+    }
+  }
+
+  [[nodiscard]] static constexpr int width() noexcept { return W; }
+  [[nodiscard]] float operator[](int lane) const noexcept { return lanes_[lane]; }
+
+  [[nodiscard]] friend Pack operator+(Pack const& a, Pack const& b) noexcept { return Pack(a.lanes_ + b.lanes_); }
+  [[nodiscard]] friend Pack operator-(Pack const& a, Pack const& b) noexcept { return Pack(a.lanes_ - b.lanes_); }
+  [[nodiscard]] friend Pack operator*(Pack const& a, Pack const& b) noexcept { return Pack(a.lanes_ * b.lanes_); }
+  [[nodiscard]] friend Pack operator/(Pack const& a, Pack const& b) noexcept { return Pack(a.lanes_ / b.lanes_); }
+  [[nodiscard]] friend Pack operator-(Pack const& a) noexcept { return Pack(-a.lanes_); }
+  Pack& operator+=(Pack const& b) noexcept { return *this = *this + b; }  // Eigen's sums ask for these
+  Pack& operator*=(Pack const& b) noexcept { return *this = *this * b; }
+
+  [[nodiscard]] friend Mask operator<(Pack const& a, Pack const& b) noexcept { return Mask(a.lanes_ < b.lanes_); }
+  [[nodiscard]] friend Mask operator>(Pack const& a, Pack const& b) noexcept { return Mask(a.lanes_ > b.lanes_); }
+  [[nodiscard]] friend Mask operator<=(Pack const& a, Pack const& b) noexcept { return Mask(a.lanes_ <= b.lanes_); }
+  [[nodiscard]] friend Mask operator>=(Pack const& a, Pack const& b) noexcept { return Mask(a.lanes_ >= b.lanes_); }
+
+  [[nodiscard]] friend Pack select(Mask const& m, Pack const& a, Pack const& b) noexcept {
+    return Pack(m.bits() ? a.lanes_ : b.lanes_);
+  }
+  [[nodiscard]] friend Pack sqrt(Pack const& a) noexcept {
+    return Pack([&a](int lane) noexcept { return std::sqrt(a[lane]); });
+  }
+  [[nodiscard]] friend Mask finite(Pack const& a) noexcept {
+    constexpr std::int32_t exponent = 0x7f800000;
+    return Mask((reinterpret_cast<Bits>(a.lanes_) & exponent) != exponent);
+  }
+
+ private:
+  explicit Pack(Lanes const& lanes) noexcept : lanes_(lanes) {}
+
+  Lanes lanes_{};
+};
+
+}  // namespace wend::inline v0::lab
+
+namespace Eigen {
+
+/// Lets a Pack be the scalar of an Eigen vector.
+template <int W>
+struct NumTraits<wend::lab::Pack<W>> : GenericNumTraits<wend::lab::Pack<W>> {
+  enum { IsInteger = 0, IsSigned = 1, IsComplex = 0, RequireInitialization = 1, ReadCost = 1, AddCost = 1, MulCost = 1 };
+};
+
+}  // namespace Eigen
+
+#if defined(__GNUC__) && !defined(__clang__)
+#pragma GCC diagnostic pop
+#endif

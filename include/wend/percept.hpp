@@ -1,0 +1,66 @@
+// wend/percept.hpp - what the machine knows this tick, digested once for every field that asks.
+#pragma once
+
+#include "wend/disc.hpp"
+#include "wend/number.hpp"
+#include "wend/plane.hpp"
+
+namespace wend::inline v0 {
+
+/// Everything a field may read, in one frame: the world's or the robot's own. Made by `look`. It refers to the discs
+/// it was made from, which must outlive it.
+template <Number S, int Capacity>
+struct Percept {
+  Pose<S> pose;
+  Vec2<S> goal;
+  DiscSet<S, Capacity> const& discs;
+  S robot_radius;  ///< metres
+  S dt;            ///< seconds since the last tick, never negative; 0 where what was given was not a time
+
+  Vec2<S> goal_direction;  ///< unit, from the robot to the goal; (0, 0) on the goal
+  S goal_distance;         ///< metres, from the robot's centre
+  Disc<S> nearest;         ///< the disc with the least clearance; one far away when there is none
+  S clearance;             ///< metres from the robot's edge to the nearest disc's; negative when they overlap
+  Vec2<S> away;            ///< unit, from the nearest disc's centre to the robot's; (0, 0) when they coincide
+};
+
+/// Whether any disc is near enough to have been seen at all.
+template <Number S, int Capacity>
+[[nodiscard]] mask_t<S> sees_a_disc(Percept<S, Capacity> const& percept) noexcept {
+  return percept.clearance < S(0.5F * far_away);
+}
+
+/// Digests what is known: the direction and distance of the goal, the nearest disc, its clearance and the direction
+/// away from it. Metres and seconds; pose, goal and discs in one frame. Of two discs equally near, the first counts.
+/// Costs one square root a disc and two more.
+template <Number S, int Capacity>
+[[nodiscard]] Percept<S, Capacity> look(Pose<S> const& pose, Vec2<S> const& goal, DiscSet<S, Capacity> const& discs,
+                                        S robot_radius, S dt) noexcept {
+  Disc<S> nearest;
+  S least_gap = S(far_away);
+  for (Disc<S> const& disc : discs) {
+    S const here = gap(disc, pose.position);
+    mask_t<S> const nearer = here < least_gap;
+    nearest.centre = select(nearer, disc.centre, nearest.centre);
+    nearest.radius = select(nearer, disc.radius, nearest.radius);
+    least_gap = least(here, least_gap);
+  }
+  Polar<S> const to_goal = polar(Vec2<S>(goal - pose.position));
+  Polar<S> const away = polar(Vec2<S>(pose.position - nearest.centre));
+  return {pose,
+          goal,
+          discs,
+          robot_radius,
+          clamp(dt, S(0.0F), S(far_away)),
+          to_goal.direction,
+          to_goal.length,
+          nearest,
+          least_gap - robot_radius,
+          away.direction};
+}
+
+/// A percept refers to its discs: give look a set that outlives it.
+template <Number S, int Capacity>
+Percept<S, Capacity> look(Pose<S> const&, Vec2<S> const&, DiscSet<S, Capacity>&&, S, S) = delete;
+
+}  // namespace wend::inline v0
