@@ -28,7 +28,7 @@ template <Number S>
 }
 
 /// How far along a ray (a unit direction from an origin) the first point of a disc lies. 0 when the ray starts inside;
-/// far_away when it misses or the disc lies behind.
+/// far_away when it misses or the disc lies behind, and when a number among them is not one: ask `finite` first.
 template <Number S>
 [[nodiscard]] S ray_to_disc(Vec2<S> const& origin, Vec2<S> const& direction, Disc<S> const& disc) noexcept {
   Vec2<S> const to_centre = disc.centre - origin;

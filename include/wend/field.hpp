@@ -18,11 +18,17 @@ struct Course {
   S confidence{S(0.0F)};                ///< in [0, 1]; 0 means no opinion
 };
 
-/// A course from a vector that need not be a unit one: confidence where it has a length, else no opinion.
+/// A course from a vector taken apart, and a confidence over 0. No opinion where the vector has no direction, which is
+/// then (0, 0): so direction (0, 0) and confidence 0 always come together.
+template <Number S>
+[[nodiscard]] Course<S> course_along(Polar<S> const& way, S const& confidence) noexcept {
+  return {way.direction, select(way.length > S(no_length), confidence, S(0.0F))};
+}
+
+/// A course from a vector that need not be a unit one.
 template <Number S>
 [[nodiscard]] Course<S> course_along(Vec2<S> const& vector, S const& confidence) noexcept {
-  Polar<S> const way = polar(vector);
-  return {way.direction, select(way.length > S(0.0F), confidence, S(0.0F))};
+  return course_along(polar(vector), confidence);
 }
 
 namespace detail {
@@ -102,6 +108,9 @@ template <typename F, Number S, int N, typename Memory>
   if constexpr (!requires(memory_t<F, S>& m) { f(percept, m); }) {
     return f(percept);
   } else if constexpr (std::is_empty_v<Memory>) {
+    static_assert(std::is_empty_v<memory_t<F, S>>,
+                  "wend: this policy remembers, and was given the memory of one that does not, so it would forget on "
+                  "every tick; write: wend::memory_t<decltype(policy), float> memory;");
     memory_t<F, S> none;
     return f(percept, none);
   } else {

@@ -22,8 +22,8 @@ namespace wend::inline v0 {
 template <Number S>
 struct Command {
   WheelRates<S> wheels;    ///< radians a second, finite and within the drive's limits whatever came in
-  BodyVelocity<S> body;    ///< what those wheel rates make of the body: after saturation
-  Course<S> course;        ///< what the policy wanted, in the percept's frame
+  BodyVelocity<S> body;    ///< what those wheel rates make of the body
+  Course<S> course;        ///< what the policy wanted, in the percept's frame; none when stale or blind
   Findings<S> findings{};  ///< everything that held
 };
 
@@ -99,7 +99,7 @@ struct Loop {
     mask_t<S> const trusted = !findings.stale && !findings.blind;
     // What cannot be trusted must not be remembered either.
     Memory<S> next = memory;
-    command.course = evaluate(policy, percept, next.policy);
+    assign_where(trusted, command.course, evaluate(policy, percept, next.policy));
     findings.stuck = progress(percept, next.progress) && trusted;
     assign_where(trusted, memory, next);
 
@@ -107,14 +107,14 @@ struct Loop {
     findings.no_course = trusted && !(command.course.confidence > S(0.0F));
     S const allowed = pace(percept);
     findings.blocked = trusted && !findings.arrived && !(allowed > S(0.0F));
-    findings.discs_dropped = findings.discs_dropped || S(static_cast<Parameter>(discs.dropped())) > S(0.0F);
+    findings.discs_dropped = S(static_cast<Parameter>(discs.dropped())) > S(0.0F);
 
     BodyVelocity<S> wanted = steering(command.course, now.pose.heading, allowed);
     mask_t<S> const stop = must_stop(findings);
     wanted.speed = select(stop, S(0.0F), wanted.speed);
     wanted.turn_rate = select(stop, S(0.0F), wanted.turn_rate);
-    command.wheels = drive.wheels(wanted);
-    command.body = drive.body(command.wheels);
+    command.body = drive.within_limits(wanted);
+    command.wheels = drive.wheels(command.body);
     return command;
   }
 };

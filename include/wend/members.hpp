@@ -32,11 +32,13 @@ consteval int member_count() {
 
 }  // namespace detail
 
-/// Calls f(member of a, member of b) for each pair of members of two plain structs of one type, in order.
+/// Calls f(member of a, member of b) for each pair of members of two plain structs, in order: of one type, or of one
+/// template over two numbers.
 template <typename T, typename U, typename F>
 constexpr void for_each_member(T& a, U& b, F&& f) noexcept {
-  static_assert(std::is_same_v<std::remove_const_t<T>, std::remove_const_t<U>>);
   constexpr int count = detail::member_count<std::remove_const_t<T>>();
+  static_assert(count == detail::member_count<std::remove_const_t<U>>(),
+                "wend: two structs that differ in their members");
   static_assert(count <= 8,
                 "wend: a memory may have up to eight members; group some of them in a struct of their own");
   if constexpr (std::is_empty_v<T> || count == 0) {

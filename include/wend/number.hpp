@@ -23,20 +23,22 @@ template <typename S>
 using mask_t = decltype(std::declval<S const&>() < std::declval<S const&>());
 
 /// The one customisation point: a where the mask holds, b elsewhere. A guest number brings its own overloads, for its
-/// mask with its numbers and for its mask with its masks, as friends.
+/// mask with its numbers and for its mask with its masks, as friends. Code outside namespace wend writes
+/// `using wend::select;` and then calls `select` by its bare name, so that both these and a guest's own are found.
 template <typename T>
   requires std::is_arithmetic_v<T>
 [[nodiscard]] constexpr T select(bool mask, T const& a, T const& b) noexcept {
   return mask ? a : b;
 }
 
-/// True where x is neither infinite nor not-a-number. Looks at the exponent bits, so it survives -ffast-math, where
-/// the compiler may assume `x == x`.
-[[nodiscard]] constexpr bool finite(float x) noexcept {
+/// True where x is neither infinite nor not-a-number. Looks at the exponent bits, so a reading that lies in memory is
+/// judged rightly under -ffast-math too, where the compiler may assume `x == x`. By reference, because clang 19 then
+/// assumes of every float passed or returned by value that it is finite.
+[[nodiscard]] constexpr bool finite(float const& x) noexcept {
   constexpr std::uint32_t exponent = 0x7f800000U;
   return (std::bit_cast<std::uint32_t>(x) & exponent) != exponent;
 }
-[[nodiscard]] constexpr bool finite(double x) noexcept {
+[[nodiscard]] constexpr bool finite(double const& x) noexcept {
   constexpr std::uint64_t exponent = 0x7ff0000000000000U;
   return (std::bit_cast<std::uint64_t>(x) & exponent) != exponent;
 }

@@ -2,6 +2,7 @@
 #pragma once
 
 #include "wend/disc.hpp"
+#include "wend/members.hpp"
 #include "wend/number.hpp"
 #include "wend/plane.hpp"
 
@@ -15,24 +16,26 @@ struct Percept {
   Vec2<S> goal;
   DiscSet<S, Capacity> const& discs;
   S robot_radius;  ///< metres
-  S dt;            ///< seconds since the last tick, never negative; 0 where what was given was not a time
+  S dt;            ///< seconds since the last tick, in [0, far_away]; 0 where what was given was not a number
 
-  Vec2<S> goal_direction;  ///< unit, from the robot to the goal; (0, 0) on the goal
+  Vec2<S> goal_direction;  ///< unit, from the robot to the goal; (0, 0) on it, or farther than far_away
   S goal_distance;         ///< metres, from the robot's centre
   Disc<S> nearest;         ///< the disc with the least clearance; one far away when there is none
   S clearance;             ///< metres from the robot's edge to the nearest disc's; negative when they overlap
-  Vec2<S> away;            ///< unit, from the nearest disc's centre to the robot's; (0, 0) when they coincide
+  Vec2<S> away;            ///< unit, from the nearest disc's centre to the robot's; (0, 0) when they coincide or
+                           ///< there is no disc
 };
 
-/// Whether any disc is near enough to have been seen at all.
+/// Whether there is a disc with a direction away from it.
 template <Number S, int Capacity>
 [[nodiscard]] mask_t<S> sees_a_disc(Percept<S, Capacity> const& percept) noexcept {
-  return percept.clearance < S(0.5F * far_away);
+  return dot(percept.away, percept.away) > S(0.0F);
 }
 
 /// Digests what is known: the direction and distance of the goal, the nearest disc, its clearance and the direction
 /// away from it. Metres and seconds; pose, goal and discs in one frame. Of two discs equally near, the first counts.
-/// Costs one square root a disc and two more.
+/// Costs one square root a disc and two more. A pose that is not a number sees no disc (a clearance of far_away), and
+/// its goal distance is not a number: ask `sound` first, as a loop does.
 template <Number S, int Capacity>
 [[nodiscard]] Percept<S, Capacity> look(Pose<S> const& pose, Vec2<S> const& goal, DiscSet<S, Capacity> const& discs,
                                         S robot_radius, S dt) noexcept {
@@ -41,26 +44,28 @@ template <Number S, int Capacity>
   for (Disc<S> const& disc : discs) {
     S const here = gap(disc, pose.position);
     mask_t<S> const nearer = here < least_gap;
-    nearest.centre = select(nearer, disc.centre, nearest.centre);
-    nearest.radius = select(nearer, disc.radius, nearest.radius);
-    least_gap = least(here, least_gap);
+    assign_where(nearer, nearest, disc);
+    assign_where(nearer, least_gap, here);
   }
   Polar<S> const to_goal = polar(Vec2<S>(goal - pose.position));
+  mask_t<S> const reachable = to_goal.length < S(far_away);  // else it is no goal, and its direction may be no number
   Polar<S> const away = polar(Vec2<S>(pose.position - nearest.centre));
+  mask_t<S> const some = least_gap < S(0.5F * far_away);  // the stand-in for no disc is a million metres away
+  // Component by component: copied whole, g++ 12 stores two halves and then waits to load them as one.
   return {pose,
           goal,
           discs,
           robot_radius,
           clamp(dt, S(0.0F), S(far_away)),
-          to_goal.direction,
+          {select(reachable, to_goal.direction.x(), S(0.0F)), select(reachable, to_goal.direction.y(), S(0.0F))},
           to_goal.length,
           nearest,
           least_gap - robot_radius,
-          away.direction};
+          {select(some, away.direction.x(), S(0.0F)), select(some, away.direction.y(), S(0.0F))}};
 }
 
 /// A percept refers to its discs: give look a set that outlives it.
 template <Number S, int Capacity>
-Percept<S, Capacity> look(Pose<S> const&, Vec2<S> const&, DiscSet<S, Capacity>&&, S, S) = delete;
+Percept<S, Capacity> look(Pose<S> const&, Vec2<S> const&, DiscSet<S, Capacity> const&&, S, S) = delete;
 
 }  // namespace wend::inline v0

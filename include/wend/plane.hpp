@@ -61,14 +61,17 @@ struct Polar {
   S length;
 };
 
-/// v taken apart. Degenerate: a vector whose squared length is zero (shorter than 1e-19 in single precision) has
-/// direction (0, 0) and length 0.
+/// The length up to which a vector counts as none, on every number type: the square of anything longer is a normal
+/// number in single precision; below, it loses digits, and with it the direction would no longer be a unit vector.
+inline constexpr Parameter no_length = 1.1e-19F;
+
+/// v taken apart. Degenerate: a vector no longer than no_length, or of a length that is not a number, has direction
+/// (0, 0). One whose length overflows has no useful direction; `look` lets none of those through.
 template <Number S>
 [[nodiscard]] Polar<S> polar(Vec2<S> const& v) noexcept {
   S const size = length(v);
-  mask_t<S> const some = size > S(0.0F);
-  S const scale = select(some, S(S(1.0F) / select(some, size, S(1.0F))), S(0.0F));
-  return {scaled(v, scale), size};
+  Vec2<S> const unit = scaled(v, S(S(1.0F) / size));  // of size 0 too: what comes of it is not taken
+  return {select(size > S(no_length), unit, zero2<S>()), size};
 }
 
 /// Where the machine is and which way its nose points: metres, and a unit vector instead of an angle, so that nothing

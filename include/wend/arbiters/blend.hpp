@@ -13,11 +13,12 @@ template <typename Signal>
 struct ramp_weight {
   [[no_unique_address]] Signal signal;
   Parameter low;
-  Parameter per_unit;
+  Parameter high;
 
   template <Number S, int N>
   [[nodiscard]] constexpr S operator()(Percept<S, N> const& percept) const noexcept {
-    return clamp(S((signal(percept) - S(low)) * S(per_unit)), S(0.0F), S(1.0F));
+    S const per_unit = S(1.0F) / (S(high) - S(low));  // on S: as a Parameter its rounding would show in double
+    return clamp(S((signal(percept) - S(low)) * per_unit), S(0.0F), S(1.0F));
   }
 };
 
@@ -26,7 +27,7 @@ template <typename Signal>
 [[nodiscard]] constexpr ramp_weight<Signal> ramp(Signal signal, Parameter low, Parameter high) noexcept {
   detail::check_signal<Signal>();
   WEND_ASSERT(low < high);
-  return {signal, low, 1.0F / (high - low)};
+  return {signal, low, high};
 }
 
 /// A constant weight.
@@ -63,7 +64,7 @@ struct blended_field {
     Vec2<S> const sum = scaled(at_low.direction, S((S(1.0F) - w) * at_low.confidence)) +
                         scaled(at_high.direction, S(w * at_high.confidence));
     Polar<S> const way = polar(sum);
-    return {way.direction, least(way.length, S(1.0F))};
+    return course_along(way, least(way.length, S(1.0F)));
   }
 };
 
@@ -82,8 +83,8 @@ template <typename Field>
   return {weight, field};
 }
 
-/// blend(ramp(clearance, 0.5F, 1.2F), away_from_discs{}, toward_goal{}): the first field where the ramp is 0, the second
-/// where it is 1.
+/// blend(ramp(clearance, 0.5F, 1.2F), away_from_discs{}, toward_goal{}): the first field where the ramp is 0, the
+/// second where it is 1.
 template <typename Signal, typename Low, typename High>
 [[nodiscard]] constexpr blended_field<ramp_weight<Signal>, Low, High> blend(ramp_weight<Signal> weight, Low low,
                                                                              High high) noexcept {

@@ -75,7 +75,8 @@ struct above_guard {
   }
 };
 
-/// Keeps an answer of another guard for `dwell` seconds at least, whatever the noise. The first answer is taken at once.
+/// Keeps an answer of another guard for `dwell` seconds at least, whatever the noise. The first answer is taken at
+/// once.
 template <typename Guard>
 struct held_guard {
   [[no_unique_address]] Guard guard;

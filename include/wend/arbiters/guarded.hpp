@@ -1,4 +1,4 @@
-// wend/arbiters/guarded.hpp - one field inside a guard, another outside: the hard switch and the switch with hysteresis.
+// wend/arbiters/guarded.hpp - one field inside a guard, another outside: switched hard, or with hysteresis.
 #pragma once
 
 #include "wend/arbiters/guard.hpp"

@@ -1,4 +1,4 @@
-// wend/arbiters/signal.hpp - signals: what a guard or a ramp looks at. A signal is a functor from a percept to a number.
+// wend/arbiters/signal.hpp - signals: what a guard or a ramp looks at, functors from a percept to a number.
 #pragma once
 
 #include "wend/number.hpp"
@@ -39,7 +39,7 @@ struct disc_before_goal {
 
 }  // namespace signals
 
-/// Metres from the robot's edge to the nearest disc's; negative when they overlap; far_away when there is none.
+/// Metres from the robot's edge to the nearest disc's; negative when they overlap; about far_away when there is none.
 inline constexpr signals::clearance clearance{};
 
 /// Metres from the robot's centre to the goal.

@@ -6,26 +6,37 @@
 namespace wend::inline v0 {
 
 /// Past the nearest disc: the direction to it plus or minus pi/2, on the side nearer the goal. The side is chosen when
-/// the field is entered and kept until it is left, also when another disc becomes the nearest; that is what stops the
-/// machine from dithering before a disc that stands exactly in its way. A goal exactly behind the disc is passed
-/// leaving the disc on the right hand. No opinion where there is no disc, or at the very centre of one.
+/// the field is entered and kept until it is left; that is what stops the machine from dithering before a disc that
+/// stands in its way. A goal exactly behind the disc is passed leaving the disc on the right hand.
+///
+/// When the direction to the nearest disc jumps by more than 60 degrees from one tick to the next, another disc has
+/// become the nearest, on the other flank of a gap as a rule. To keep the hand there would mean to turn back, so the
+/// side is chosen again, as the one that the nose already points to, and kept in its turn.
+///
+/// No opinion where there is no disc, or at the very centre of one.
 struct past_disc {
   template <Number S>
   struct Memory {
-    mask_t<S> committed{};
+    Vec2<S> away{S(0.0F), S(0.0F)};  ///< of the tick before; (0, 0) before the first
     mask_t<S> disc_on_right{};
   };
 
   template <Number S, int N>
   [[nodiscard]] constexpr Course<S> operator()(Percept<S, N> const& percept, Memory<S>& memory) const noexcept {
-    mask_t<S> const some = sees_a_disc(percept) && dot(percept.away, percept.away) > S(0.0F);
+    Vec2<S> const& away = percept.away;
+    mask_t<S> const some = sees_a_disc(percept);
+    mask_t<S> const first = !(dot(memory.away, memory.away) > S(0.0F));
+    mask_t<S> const another = dot(memory.away, away) < S(0.5F);  // cosine of 60 degrees
     // With the disc on the right hand the machine goes to the right of `away`, which points from the disc to it.
-    mask_t<S> const goal_that_way = cross(percept.away, percept.goal_direction) <= S(0.0F);
-    memory.disc_on_right = select(memory.committed, memory.disc_on_right, goal_that_way);
-    memory.committed = memory.committed || some;
-    Vec2<S> const left = left_of(percept.away);
+    mask_t<S> const right_to_goal = cross(away, percept.goal_direction) <= S(0.0F);
+    mask_t<S> const right_to_nose = cross(away, percept.pose.heading) <= S(0.0F);
+    mask_t<S> const chosen = select(another, right_to_nose, memory.disc_on_right);
+    mask_t<S> const disc_on_right = select(first, right_to_goal, chosen);
+    memory.disc_on_right = select(some, disc_on_right, memory.disc_on_right);
+    memory.away = select(some, away, memory.away);
+    Vec2<S> const left = left_of(away);
     Vec2<S> const right = -left;
-    return {select(some, select(memory.disc_on_right, right, left), zero2<S>()), select(some, S(1.0F), S(0.0F))};
+    return {select(disc_on_right, right, left), select(some, S(1.0F), S(0.0F))};
   }
 };
 

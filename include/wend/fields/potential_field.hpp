@@ -27,11 +27,13 @@ struct potential_field {
   template <Number S, int N>
   [[nodiscard]] constexpr Force<S> force(Percept<S, N> const& percept) const noexcept {
     S const pull = S(attraction) * percept.goal_distance;
+    // Divided in S: the quotient of two Parameters would leave a push at the edge of the influence in double.
+    S const edge = S(1.0F) / S(influence);
     Force<S> total{scaled(percept.goal_direction, pull), pull};
     for (Disc<S> const& disc : percept.discs) {
       Polar<S> const away = polar(Vec2<S>(percept.pose.position - disc.centre));
       S const rho = greatest(S(away.length - disc.radius - percept.robot_radius), S(closest));
-      S const push = S(repulsion) * (S(1.0F) / rho - S(1.0F / influence)) / squared(rho);
+      S const push = S(repulsion) * (S(1.0F) / rho - edge) / squared(rho);
       S const felt = select(rho < S(influence), push, S(0.0F));
       total.sum = total.sum + scaled(away.direction, felt);
       total.sum_of_sizes = total.sum_of_sizes + felt;
@@ -44,9 +46,8 @@ struct potential_field {
   [[nodiscard]] constexpr Course<S> operator()(Percept<S, N> const& percept) const noexcept {
     Force<S> const total = force(percept);
     Polar<S> const way = polar(total.sum);
-    mask_t<S> const some = way.length > S(0.0F);
-    S const share = way.length / select(some, total.sum_of_sizes, S(1.0F));
-    return {way.direction, select(some, least(share, S(1.0F)), S(0.0F))};
+    S const share = way.length / select(way.length > S(0.0F), total.sum_of_sizes, S(1.0F));
+    return course_along(way, least(share, S(1.0F)));
   }
 };
 

@@ -5,11 +5,14 @@
 
 namespace wend::inline v0 {
 
-/// Straight to the goal, with confidence 1. On the goal: no opinion.
+/// Straight to the goal, with confidence 1. No opinion on the goal, nor where its distance is over far_away or not a
+/// number.
 struct toward_goal {
   template <Number S, int N>
   [[nodiscard]] constexpr Course<S> operator()(Percept<S, N> const& percept) const noexcept {
-    return {percept.goal_direction, select(percept.goal_distance > S(0.0F), S(1.0F), S(0.0F))};
+    // Bounded above, since the direction of a vector whose length overflows is anything.
+    mask_t<S> const some = percept.goal_distance > S(no_length) && percept.goal_distance < S(far_away);
+    return {select(some, percept.goal_direction, zero2<S>()), select(some, S(1.0F), S(0.0F))};
   }
 };
 

@@ -15,7 +15,7 @@ struct Steering {
   Parameter max_turn_rate = 1.5F;  ///< radians a second
 
   /// `heading` and course in one frame; `allowed` in metres a second. A course exactly astern is turned to leftwards.
-  /// A course without direction gives no motion.
+  /// A course without direction gives no motion, nor does one that is not a number.
   template <Number S>
   [[nodiscard]] constexpr BodyVelocity<S> operator()(Course<S> const& course, Vec2<S> const& heading,
                                                      S const& allowed) const noexcept {
@@ -23,7 +23,9 @@ struct Steering {
     S const left = cross(heading, course.direction);
     S const full = select(left < S(0.0F), S(-1.0F), S(1.0F));
     S const wanted = S(gain) * select(ahead < S(0.0F), full, left);
-    return {allowed * greatest(ahead, S(0.0F)), clamp(wanted, S(-max_turn_rate), S(max_turn_rate))};
+    S const turn_rate = clamp(wanted, -S(max_turn_rate), S(max_turn_rate));
+    // greatest takes a product that is not a number for 0; clamp would take it for a full turn to the right.
+    return {greatest(S(allowed * ahead), S(0.0F)), select(finite(wanted), turn_rate, S(0.0F))};
   }
 };
 

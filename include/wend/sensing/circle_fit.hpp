@@ -67,9 +67,9 @@ template <PlainNumber S, typename EachPoint>
   }
   S const share = S(1.0F) / static_cast<S>(count);
   fit.centroid = scaled(sum, share);
-  S xx(0.0F);
-  S xy(0.0F);
-  S yy(0.0F);
+  S xx = S(0.0F);
+  S xy = S(0.0F);
+  S yy = S(0.0F);
   Vec2<S> right = zero2<S>();
   each_point([&](Vec2<S> const& p) noexcept {  // about the centroid, or single precision would lose the curvature
     Vec2<S> const v = p - fit.centroid;
@@ -136,7 +136,7 @@ template <int Passes, PlainNumber S, typename EachPoint>
   }
   Vec2<S> centre = start.centre;
   Pass<S> best = measure(centre, start.radius, start, each_point);
-  S damping(0.0F);
+  S damping = S(0.0F);
   constexpr S slack = S(1.0F) + S(16.0F) * std::numeric_limits<S>::epsilon();  // near the end rounding decides
   for (int pass = 1; pass < Passes && !fit.converged; ++pass) {
     S const load = damping * (best.xx + best.yy);

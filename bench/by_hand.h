@@ -1,0 +1,122 @@
+/* bench/by_hand.h - the measuring stick: the decision of bench/tick.cpp as one would write it without a library.
+ *
+ * Plain C, single precision, no vector type. It decides what the composed policy decides, to the last bit: pass beside
+ * the nearest disc while the clearance is under 0.30 m (until it is over 0.50 m), on the side nearer the goal, chosen
+ * at entry, and on the nose's side when another disc becomes the nearest; otherwise away from the disc at 0.5 m of
+ * clearance, to the goal at 1.2 m, and blended in between. */
+#ifndef WEND_BENCH_BY_HAND_H
+#define WEND_BENCH_BY_HAND_H
+
+#include <math.h>
+#include <stdbool.h>
+
+enum { HAND_DISCS = 8 };
+
+/* Metres; one frame. */
+struct hand_disc {
+  float x, y, radius;
+};
+struct hand_scene {
+  float x, y;
+  float heading_x, heading_y; /* unit */
+  float goal_x, goal_y;
+  float robot_radius;
+  int disc_count;
+  struct hand_disc discs[HAND_DISCS];
+};
+
+struct hand_memory {
+  float away_x, away_y; /* of the decision before; (0, 0) before the first beside a disc */
+  bool passing;
+  bool disc_on_right;
+};
+
+struct hand_course {
+  float x, y;
+  float confidence;
+};
+
+static inline struct hand_course hand_decide(const struct hand_scene* scene, struct hand_memory* memory) {
+  const float far_away = 1.0e6F;
+  const float enter = 0.30F;
+  const float leave = 0.50F;
+  const float low = 0.5F;
+  const float high = 1.2F;
+  struct hand_course course = {0.0F, 0.0F, 0.0F};
+
+  float least_gap = far_away;
+  float nearest_x = far_away;
+  float nearest_y = 0.0F;
+  for (int i = 0; i < scene->disc_count; ++i) {
+    const struct hand_disc* disc = &scene->discs[i];
+    const float dx = scene->x - disc->x;
+    const float dy = scene->y - disc->y;
+    const float gap = sqrtf(dx * dx + dy * dy) - disc->radius;
+    if (gap < least_gap) {
+      least_gap = gap;
+      nearest_x = disc->x;
+      nearest_y = disc->y;
+    }
+  }
+  const float clearance = least_gap - scene->robot_radius;
+
+  float away_x = scene->x - nearest_x;
+  float away_y = scene->y - nearest_y;
+  const float away_length = sqrtf(away_x * away_x + away_y * away_y);
+  const bool some_disc = clearance < 0.5F * far_away && away_length > 0.0F;
+  if (some_disc) {
+    const float scale = 1.0F / away_length;
+    away_x *= scale;
+    away_y *= scale;
+  }
+
+  float goal_x = scene->goal_x - scene->x;
+  float goal_y = scene->goal_y - scene->y;
+  const float goal_distance = sqrtf(goal_x * goal_x + goal_y * goal_y);
+  if (goal_distance > 0.0F) {
+    const float scale = 1.0F / goal_distance;
+    goal_x *= scale;
+    goal_y *= scale;
+  }
+
+  const bool passing = clearance < enter || (memory->passing && !(clearance > leave));
+  if (passing != memory->passing) {
+    memory->passing = passing;
+    memory->away_x = 0.0F;
+    memory->away_y = 0.0F;
+  }
+
+  if (passing) {
+    if (some_disc) {
+      if (memory->away_x == 0.0F && memory->away_y == 0.0F) {
+        memory->disc_on_right = away_x * goal_y - away_y * goal_x <= 0.0F;
+      } else if (memory->away_x * away_x + memory->away_y * away_y < 0.5F) { /* more than 60 degrees: another disc */
+        memory->disc_on_right = away_x * scene->heading_y - away_y * scene->heading_x <= 0.0F;
+      }
+      memory->away_x = away_x;
+      memory->away_y = away_y;
+      course.x = memory->disc_on_right ? away_y : -away_y;
+      course.y = memory->disc_on_right ? -away_x : away_x;
+      course.confidence = 1.0F;
+    }
+    return course;
+  }
+
+  float weight = (clearance - low) * (1.0F / (high - low));
+  weight = weight > 0.0F ? weight : 0.0F;
+  weight = weight < 1.0F ? weight : 1.0F;
+  const float of_away = some_disc ? 1.0F - weight : 0.0F;
+  const float of_goal = goal_distance > 0.0F ? weight : 0.0F;
+  const float x = of_away * away_x + of_goal * goal_x;
+  const float y = of_away * away_y + of_goal * goal_y;
+  const float length = sqrtf(x * x + y * y);
+  if (length > 0.0F) {
+    const float scale = 1.0F / length;
+    course.x = x * scale;
+    course.y = y * scale;
+    course.confidence = length < 1.0F ? length : 1.0F;
+  }
+  return course;
+}
+
+#endif /* WEND_BENCH_BY_HAND_H */

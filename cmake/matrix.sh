@@ -1,0 +1,54 @@
+#!/bin/sh
+# cmake/matrix.sh - the wider check. With no argument every step, else those named: g++, clang++-14, clang++,
+# clang++-19 (all tests with that compiler), sanitizers, bare, tidy. Each builds in build/<step>/. What a machine has
+# no tool for is skipped, and says so.
+set -eu
+case $0 in */*) cd "${0%/*}/.." ;; *) cd .. ;; esac
+
+has() {
+  if command -v "$1" >/dev/null; then
+    return
+  fi
+  echo "skipped: $1 is not on this machine"
+  return 1
+}
+
+# Undefined behaviour, addresses and leaks. Eigen's own asserts are on (no NDEBUG). Warnings do not stop it: g++ sees
+# ghosts in code that it has instrumented.
+sanitizers() {
+  WEND_BUILD=build/sanitizers sh cmake/test.sh -DCMAKE_BUILD_TYPE=Debug -DWEND_WERROR=OFF \
+    -DCMAKE_CXX_FLAGS='-O1 -fsanitize=address,undefined -fno-sanitize-recover=all -fno-omit-frame-pointer'
+}
+
+# What runs on a robot, as firmware compiles it: no exceptions, no RTTI, nothing of Eigen's that prints or allocates.
+bare() {
+  setup_for=tests
+  . cmake/setup.sh
+  cmake -S . -B build/bare -DCMAKE_BUILD_TYPE=MinSizeRel -DWEND_TESTS=ON -DWEND_EXAMPLES=OFF -DWEND_BENCH=OFF \
+    -DCMAKE_CXX_FLAGS='-fno-exceptions -fno-rtti -DEIGEN_NO_IO -DEIGEN_NO_MALLOC -DEIGEN_DONT_VECTORIZE'
+  cmake --build build/bare --target headers_robot
+}
+
+tidy() {
+  has clang-tidy && has clang++ || return 0
+  CXX=clang++ cmake -S . -B build/tidy -DWEND_TESTS=ON -DWEND_EXAMPLES=ON
+  find tests examples -name '*.cpp' ! -path '*/must_not_compile/*' ! -path '*/consumers/*' ! -path '*/firmware/*' |
+    xargs -n 1 -P "$(getconf _NPROCESSORS_ONLN)" clang-tidy -p build/tidy --quiet --warnings-as-errors='*'
+}
+
+if [ $# -eq 0 ]; then
+  clang=clang++-14
+  command -v $clang >/dev/null || clang=clang++
+  set -- g++ $clang clang++-19 sanitizers bare tidy
+fi
+for step in "$@"; do
+  printf '\n=== %s ===\n' "$step"
+  case $step in
+    sanitizers | bare | tidy) $step ;;
+    *++*) if has "$step"; then CXX=$step sh cmake/test.sh; fi ;;
+    *)
+      echo "no such step: $step" >&2
+      exit 2
+      ;;
+  esac
+done

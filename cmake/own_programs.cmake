@@ -1,0 +1,23 @@
+# Flags of wend's own programs. They hang on targets that are never exported, so no consumer sees them.
+
+if(PROJECT_IS_TOP_LEVEL)
+  set(CMAKE_EXPORT_COMPILE_COMMANDS ON)
+  if(NOT CMAKE_BUILD_TYPE AND NOT CMAKE_CONFIGURATION_TYPES)
+    set(CMAKE_BUILD_TYPE Release CACHE STRING "Debug, Release, RelWithDebInfo or MinSizeRel" FORCE)
+    set(CMAKE_CXX_FLAGS_RELEASE "-O2 -DNDEBUG" CACHE STRING "-O2 as firmware is built, and it compiles faster" FORCE)
+  endif()
+endif()
+set(CMAKE_CXX_EXTENSIONS OFF)
+find_package(Threads REQUIRED)  # the laptop side may run on several cores
+
+add_library(wend_warnings INTERFACE)
+target_compile_options(wend_warnings INTERFACE -Wall -Wextra -Wpedantic -Wconversion -Wsign-conversion -Wshadow
+                                               -Wdouble-promotion -Wold-style-cast $<$<BOOL:${WEND_WERROR}>:-Werror>)
+
+# The same bits on every machine: no a * b + c fused into one rounding where the processor happens to be able to
+# (-ffp-contract), and no branch into the C library beside each square root (-fmath-errno).
+add_library(wend_same_bits INTERFACE)
+target_compile_options(wend_same_bits INTERFACE -ffp-contract=off -fno-math-errno)
+
+add_library(wend_own INTERFACE)
+target_link_libraries(wend_own INTERFACE wend::wend wend_warnings wend_same_bits Threads::Threads)

@@ -1,0 +1,23 @@
+// wend/lab/vehicle.hpp - the machine in simulation: its body, its drive, and how badly it sees.
+#pragma once
+
+#include "wend/motion/differential_drive.hpp"
+
+namespace wend::inline v0::lab {
+
+/// A machine with two wheels and a ranger. What the loop believes about it (its own drive, its reaction time) may
+/// differ; that is what simulation is for.
+struct Vehicle {
+  DifferentialDrive drive{};
+  double radius = 0.20;        ///< metres: of the circle that holds the whole body
+  double acceleration = 2.0;   ///< metres a second squared that a wheel's rim can speed up or brake with
+  double latency = 0.05;       ///< seconds from the readings to the wheels' first response
+  double period = 0.05;        ///< seconds between ticks
+  double jitter = 0.0;         ///< share by which a period varies, evenly to both sides
+  double range_noise = 0.01;   ///< metres, standard deviation of one range
+  double dropout = 0.01;       ///< share of the beams that read 0 at any time
+  double position_noise = 0.0;  ///< metres, standard deviation of each coordinate of the pose estimate, anew each tick
+  double heading_noise = 0.0;   ///< radians, standard deviation of the estimated heading, anew each tick
+};
+
+}  // namespace wend::inline v0::lab

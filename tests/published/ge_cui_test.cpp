@@ -1,0 +1,101 @@
+// Goals not reachable with obstacle nearby: Ge and Cui (2000), New potential functions for mobile robot path planning,
+// IEEE Trans. Robotics and Automation 16(5):615-620, show that with Khatib's functions a goal within the influence of
+// an obstacle is no minimum of the potential. The figures are worked out here from those functions (from memory).
+#include <algorithm>
+#include <cmath>
+
+#include <doctest/doctest.h>
+
+#include "../field_list.hpp"
+#include "wend/fields/potential_field.hpp"
+
+namespace {
+
+constexpr wend::potential_field field{1.0F, 0.0625F, 0.75F, 0.01F};
+constexpr double disc_radius = 0.5;
+constexpr double robot_radius = 0.25;
+
+// The goal at the origin, and a disc on the x axis behind it, with so much clearance for a machine on the goal.
+scenes::Scene<double> goal_before_a_disc(double clearance_on_goal) {
+  scenes::Scene<double> scene;
+  scene.robot_radius = robot_radius;
+  scene.put(disc_radius + robot_radius + clearance_on_goal, 0.0, disc_radius);
+  return scene;
+}
+
+double potential(scenes::Scene<double> const& scene) {
+  wend::Vec2<double> const x = scene.pose.position;
+  double const rho =
+      std::hypot(x.x() - scene.discs[0].centre.x(), x.y() - scene.discs[0].centre.y()) - disc_radius - robot_radius;
+  double const excess = rho <= 0.75 ? 1.0 / rho - 1.0 / 0.75 : 0.0;
+  return 0.5 * (x.x() * x.x() + x.y() * x.y()) + 0.0625 / 2.0 * excess * excess;
+}
+
+// Follows the force downhill in small steps until it has died away; the position reached.
+wend::Vec2<double> descend(scenes::Scene<double> scene, wend::Vec2<double> const& from) {
+  scene.pose.position = from;
+  for (int i = 0; i < 20000; ++i) {
+    wend::Vec2<double> const force = field.force(scene.percept()).sum;
+    double const size = wend::length(force);
+    scene.pose.position += force * std::min(0.01, 0.01 / (size + 1.0e-300));
+    if (size < 1.0e-13) {
+      break;
+    }
+  }
+  return scene.pose.position;
+}
+
+// Where, on the goal's far side from the disc, pull and push are equal: bisection on -x = eta (1/rho - 1/rho0) / rho^2.
+double balance(double clearance_on_goal) {
+  double low = clearance_on_goal - 0.75;  // here nothing pushes
+  double high = 0.0;
+  for (int i = 0; i < 60; ++i) {
+    double const x = (low + high) / 2.0;
+    double const rho = clearance_on_goal - x;
+    (-x > 0.0625 * (1.0 / rho - 1.0 / 0.75) / (rho * rho) ? low : high) = x;
+  }
+  return (low + high) / 2.0;
+}
+
+}  // namespace
+
+TEST_CASE("a goal within the influence of a disc is no standstill of the potential field") {
+  for (double const clearance : {0.1, 0.3, 0.5, 0.7}) {
+    scenes::Scene<double> const on_goal = goal_before_a_disc(clearance);
+    auto const force = field.force(on_goal.percept());
+    double const push = 0.0625 * (1.0 / clearance - 1.0 / 0.75) / (clearance * clearance);
+    CHECK(force.sum.x() == doctest::Approx(-push).epsilon(1.0e-12));
+    CHECK(force.sum.y() == 0.0);
+    wend::Course<double> const course = scenes::answer(field, on_goal);
+    CHECK(course.direction.x() == -1.0);  // it drives off the goal, and is sure of it
+    CHECK(course.confidence == doctest::Approx(1.0));
+  }
+}
+
+TEST_CASE("downhill ends beside a goal that is too near a disc, at a place of lower potential") {
+  for (double const clearance : {0.1, 0.3, 0.5}) {
+    scenes::Scene<double> scene = goal_before_a_disc(clearance);
+    double const expected = balance(clearance);
+    for (wend::Vec2<double> const& from : {wend::Vec2<double>{-2.0, 0.3}, wend::Vec2<double>{-0.5, -1.5}}) {
+      wend::Vec2<double> const end = descend(scene, from);
+      CHECK(std::abs(end.x() - expected) < 1.0e-9);
+      CHECK(std::abs(end.y()) < 1.0e-9);
+      CHECK(wend::length(end) > 0.05);
+      double const on_goal = potential(scene);
+      scenes::Scene<double> there = scene;
+      there.pose.position = end;
+      CHECK(potential(there) < on_goal);
+    }
+    MESSAGE("clearance on the goal ", clearance, " m: ends ", -expected, " m before it");
+  }
+}
+
+TEST_CASE("downhill ends on a goal that is out of the influence of every disc") {
+  for (double const clearance : {0.75, 0.8, 2.0}) {
+    scenes::Scene<double> const scene = goal_before_a_disc(clearance);
+    for (wend::Vec2<double> const& from : {wend::Vec2<double>{-2.0, 0.3}, wend::Vec2<double>{0.2, 1.5}}) {
+      CHECK(wend::length(descend(scene, from)) < 1.0e-9);
+    }
+    CHECK(scenes::answer(field, scene).confidence == 0.0);
+  }
+}
