@@ -21,3 +21,17 @@ target_compile_options(wend_same_bits INTERFACE -ffp-contract=off -fno-math-errn
 
 add_library(wend_own INTERFACE)
 target_link_libraries(wend_own INTERFACE wend::wend wend_warnings wend_same_bits Threads::Threads)
+
+# MPFI, a general-purpose interval library, to compare with in one test and one benchmark. Without it they say that they
+# left that out.
+add_library(wend_mpfi INTERFACE)
+find_path(WEND_MPFI_INCLUDE_DIR mpfi.h)
+find_library(WEND_MPFI_LIBRARY mpfi)
+find_library(WEND_MPFR_LIBRARY mpfr)
+find_library(WEND_GMP_LIBRARY gmp)
+mark_as_advanced(WEND_MPFI_INCLUDE_DIR WEND_MPFI_LIBRARY WEND_MPFR_LIBRARY WEND_GMP_LIBRARY)
+if(WEND_MPFI_INCLUDE_DIR AND WEND_MPFI_LIBRARY AND WEND_MPFR_LIBRARY AND WEND_GMP_LIBRARY)
+  target_compile_definitions(wend_mpfi INTERFACE WEND_HAS_MPFI)
+  target_include_directories(wend_mpfi SYSTEM INTERFACE ${WEND_MPFI_INCLUDE_DIR})
+  target_link_libraries(wend_mpfi INTERFACE ${WEND_MPFI_LIBRARY} ${WEND_MPFR_LIBRARY} ${WEND_GMP_LIBRARY})
+endif()

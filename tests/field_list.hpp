@@ -54,7 +54,7 @@ struct shy {
   [[nodiscard]] constexpr wend::Course<S> operator()(wend::Percept<S, N> const& percept,
                                                      Memory<S>& memory) const noexcept {
     using wend::select;  // as with std::swap: for plain numbers this one, for others the one they bring along
-    wend::mask_t<S> const tighter = wend::sees_a_disc(percept) && percept.clearance < memory.least_clearance;
+    wend::mask_t<S> const tighter = percept.away_confidence > S(0.0F) && percept.clearance < memory.least_clearance;
     memory.from_tightest = select(tighter, percept.away, memory.from_tightest);
     memory.least_clearance = select(tighter, percept.clearance, memory.least_clearance);
     memory.since = select(tighter, S(0.0F), S(memory.since + percept.dt));

@@ -217,7 +217,7 @@ TEST_CASE_TEMPLATE("turning and shifting the whole scene turns what look sees th
 TEST_CASE_TEMPLATE("look without a disc sees none, and a clearance without end", S, WEND_TEST_NUMBERS) {
   Discs<S> const none;
   auto const got = wend::look(wend::Pose<S>{}, Vec2<S>(S(3.0F), S(4.0F)), none, S(0.25F), S(0.1F));
-  CHECK(numbers::none<S>(wend::sees_a_disc(got)));
+  CHECK(numbers::none<S>(got.away_confidence > S(0.0F)));
   CHECK(plain(got.clearance) == 1.0e6 - 0.25);
   CHECK(between(plain(got.away, 0), {0.0, 0.0}) == 0.0);
   CHECK(plain(got.goal_distance) == 5.0);
@@ -236,11 +236,11 @@ TEST_CASE_TEMPLATE("on the goal there is no direction to it, and at a disc's cen
     CHECK(plain(got.goal_distance, k) == 0.0);
     CHECK(between(plain(got.away, k), {0.0, 0.0}) == 0.0);
     CHECK(plain(got.clearance, k) == -1.0);
-    CHECK_FALSE(numbers::holds(wend::sees_a_disc(got), k));  // a disc without a direction is the clearance's business
+    CHECK_FALSE(numbers::holds(got.away_confidence > S(0.0F), k));  // a disc without a direction is the clearance's business
   }
   wend::Pose<S> beside = pose;
   beside.position.x() = S(1.75F);
-  CHECK(numbers::all<S>(wend::sees_a_disc(wend::look(beside, pose.position, discs, S(0.25F), S(0.1F)))));
+  CHECK(numbers::all<S>(wend::look(beside, pose.position, discs, S(0.25F), S(0.1F)).away_confidence > S(0.0F)));
 }
 
 TEST_CASE_TEMPLATE("of two discs equally near the first counts, and the nearer edge beats the nearer centre", S,
@@ -272,7 +272,7 @@ TEST_CASE_TEMPLATE("a pose or goal that is no number gives no direction, and a d
     CHECK(numbers::none<S>(got->goal_distance < S(wend::far_away)));
   }
   // Nothing can be said of discs from nowhere: the pose has to be asked with `sound`, as a loop does.
-  CHECK(numbers::none<S>(wend::sees_a_disc(no_pose)));
+  CHECK(numbers::none<S>(no_pose.away_confidence > S(0.0F)));
   CHECK(between(plain(no_pose.away, 0), {0.0, 0.0}) == 0.0);
   CHECK(plain(no_goal.clearance) == doctest::Approx(0.3));
 }

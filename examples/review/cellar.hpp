@@ -3,6 +3,7 @@
 
 #include <numbers>
 
+#include <wend/lab/simulate.hpp>
 #include <wend/lab/vehicle.hpp>
 #include <wend/lab/world.hpp>
 #include <wend/wend.hpp>
@@ -32,6 +33,9 @@ inline wend::lab::World world() {
 
 /// From the lift to the washing place.
 inline wend::lab::Trip trip() { return {{{0.6, 4.0}, {1.0, 0.0}}, {11.5, 4.0}, 180.0}; }
+
+/// Where the cart's middle may be.
+inline wend::lab::Region const region{{0.0, 0.0}, {12.0, 8.0}};
 
 /// A ranger with 180 beams all round, as cheap ones are: 20 mm of noise.
 inline constexpr wend::Ring<180> ring{.directions = wend::even_bearings<180>(0.0, std::numbers::pi / 90.0),

@@ -19,18 +19,14 @@ struct Percept {
   S dt;            ///< seconds since the last tick, in [0, far_away]; 0 where what was given was not a number
 
   Vec2<S> goal_direction;  ///< unit, from the robot to the goal; (0, 0) on it, or farther than far_away
+  S goal_confidence;       ///< 1, or 0 where goal_direction is (0, 0)
   S goal_distance;         ///< metres, from the robot's centre
   Disc<S> nearest;         ///< the disc with the least clearance; one far away when there is none
   S clearance;             ///< metres from the robot's edge to the nearest disc's; negative when they overlap
   Vec2<S> away;            ///< unit, from the nearest disc's centre to the robot's; (0, 0) when they coincide or
                            ///< there is no disc
+  S away_confidence;       ///< 1, or 0 where away is (0, 0)
 };
-
-/// Whether there is a disc with a direction away from it.
-template <Number S, int Capacity>
-[[nodiscard]] mask_t<S> sees_a_disc(Percept<S, Capacity> const& percept) noexcept {
-  return dot(percept.away, percept.away) > S(0.0F);
-}
 
 /// Digests what is known: the direction and distance of the goal, the nearest disc, its clearance and the direction
 /// away from it. Metres and seconds; pose, goal and discs in one frame. Of two discs equally near, the first counts.
@@ -41,27 +37,38 @@ template <Number S, int Capacity>
                                         S robot_radius, S dt) noexcept {
   Disc<S> nearest;
   S least_gap = S(far_away);
+  // On a plain number the direction is worked out once, at the end. For a set of states it has to be selected as a
+  // direction: taken from the hull of two discs' centres it could be any.
+  Polar<S> away{zero2<S>(), S(0.0F)};
   for (Disc<S> const& disc : discs) {
     S const here = gap(disc, pose.position);
     mask_t<S> const nearer = here < least_gap;
     assign_where(nearer, nearest, disc);
+    if constexpr (!PlainNumber<S>) {
+      assign_where(nearer, away, polar(Vec2<S>(pose.position - disc.centre)));
+    }
     assign_where(nearer, least_gap, here);
   }
   Polar<S> const to_goal = polar(Vec2<S>(goal - pose.position));
-  mask_t<S> const reachable = to_goal.length < S(far_away);  // else it is no goal, and its direction may be no number
-  Polar<S> const away = polar(Vec2<S>(pose.position - nearest.centre));
-  mask_t<S> const some = least_gap < S(0.5F * far_away);  // the stand-in for no disc is a million metres away
+  if constexpr (PlainNumber<S>) {
+    away = polar(Vec2<S>(pose.position - nearest.centre));
+  }
+  // A goal that far away is none, and its direction may be no number; so far away stands the stand-in for no disc.
+  mask_t<S> const some_goal = to_goal.length > S(no_length) && to_goal.length < S(far_away);
+  mask_t<S> const some_disc = away.length > S(no_length) && least_gap < S(0.5F * far_away);
   // Component by component: copied whole, g++ 12 stores two halves and then waits to load them as one.
   return {pose,
           goal,
           discs,
           robot_radius,
           clamp(dt, S(0.0F), S(far_away)),
-          {select(reachable, to_goal.direction.x(), S(0.0F)), select(reachable, to_goal.direction.y(), S(0.0F))},
+          {select(some_goal, to_goal.direction.x(), S(0.0F)), select(some_goal, to_goal.direction.y(), S(0.0F))},
+          select(some_goal, S(1.0F), S(0.0F)),
           to_goal.length,
           nearest,
           least_gap - robot_radius,
-          {select(some, away.direction.x(), S(0.0F)), select(some, away.direction.y(), S(0.0F))}};
+          {select(some_disc, away.direction.x(), S(0.0F)), select(some_disc, away.direction.y(), S(0.0F))},
+          select(some_disc, S(1.0F), S(0.0F))};
 }
 
 /// A percept refers to its discs: give look a set that outlives it.

@@ -25,10 +25,12 @@ class Stage {
             .robot_radius = S(0.2F),
             .dt = dt,
             .goal_direction = wend::zero2<S>(),
+            .goal_confidence = S(0.0F),
             .goal_distance = goal_distance,
             .nearest = {},
             .clearance = clearance,
-            .away = wend::zero2<S>()};
+            .away = wend::zero2<S>(),
+            .away_confidence = S(0.0F)};
   }
 
  private:

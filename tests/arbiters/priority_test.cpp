@@ -55,10 +55,12 @@ class Stage {
             .robot_radius = S(0.2F),
             .dt = S(0.05F),
             .goal_direction = wend::zero2<S>(),
+            .goal_confidence = S(0.0F),
             .goal_distance = S(0.0F),
             .nearest = {},
             .clearance = level,
-            .away = wend::zero2<S>()};
+            .away = wend::zero2<S>(),
+            .away_confidence = S(0.0F)};
   }
 
  private:

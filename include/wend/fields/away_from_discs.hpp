@@ -10,7 +10,7 @@ namespace wend::inline v0 {
 struct away_from_discs {
   template <Number S, int N>
   [[nodiscard]] constexpr Course<S> operator()(Percept<S, N> const& percept) const noexcept {
-    return {percept.away, select(sees_a_disc(percept), S(1.0F), S(0.0F))};
+    return {percept.away, percept.away_confidence};
   }
 };
 

@@ -24,7 +24,7 @@ struct past_disc {
   template <Number S, int N>
   [[nodiscard]] constexpr Course<S> operator()(Percept<S, N> const& percept, Memory<S>& memory) const noexcept {
     Vec2<S> const& away = percept.away;
-    mask_t<S> const some = sees_a_disc(percept);
+    mask_t<S> const some = percept.away_confidence > S(0.0F);
     mask_t<S> const first = !(dot(memory.away, memory.away) > S(0.0F));
     mask_t<S> const another = dot(memory.away, away) < S(0.5F);  // cosine of 60 degrees
     // With the disc on the right hand the machine goes to the right of `away`, which points from the disc to it.
@@ -36,7 +36,7 @@ struct past_disc {
     memory.away = select(some, away, memory.away);
     Vec2<S> const left = left_of(away);
     Vec2<S> const right = -left;
-    return {select(disc_on_right, right, left), select(some, S(1.0F), S(0.0F))};
+    return {select(disc_on_right, right, left), percept.away_confidence};
   }
 };
 

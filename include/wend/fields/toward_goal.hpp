@@ -10,9 +10,7 @@ namespace wend::inline v0 {
 struct toward_goal {
   template <Number S, int N>
   [[nodiscard]] constexpr Course<S> operator()(Percept<S, N> const& percept) const noexcept {
-    // Bounded above, since the direction of a vector whose length overflows is anything.
-    mask_t<S> const some = percept.goal_distance > S(no_length) && percept.goal_distance < S(far_away);
-    return {select(some, percept.goal_direction, zero2<S>()), select(some, S(1.0F), S(0.0F))};
+    return {percept.goal_direction, percept.goal_confidence};
   }
 };
 

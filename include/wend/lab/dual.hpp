@@ -12,8 +12,8 @@
 namespace wend::inline v0::lab {
 
 /// A double and its derivatives with respect to N independent ones (forward differentiation; Wengert 1964). Comparisons
-/// and `finite` look at the value alone, so `select` picks the branch that the value takes, and the derivative is that of
-/// the branch: where two branches meet in a kink it is the derivative on one side.
+/// and `finite` look at the value alone, so `select` picks the branch that the value takes, and the derivative is that
+/// of the branch: where two branches meet in a kink it is the derivative on one side.
 template <int N>
 class Dual {
   static_assert(N >= 1, "wend: lab::Dual<N> needs one variable at least; write lab::Dual<2>");
@@ -23,9 +23,10 @@ class Dual {
   Dual() noexcept : slopes_(Slopes::Zero()) {}
   /// A constant. A parameter of a policy counts as one, unless it is one of the knobs below.
   explicit Dual(Parameter const& x) noexcept : Dual(static_cast<double>(x)) {
-    if (knobs[0] != nullptr) {  // one look where there are none
-      for (int k = 0; k < N; ++k) {
-        slopes_[k] = knobs[static_cast<std::size_t>(k)] == &x ? 1.0 : 0.0;
+    // Of a constant in the code the compiler knows that it is no knob, and drops the loop.
+    for (int k = 0; k < N; ++k) {
+      if (knobs[static_cast<std::size_t>(k)] == &x) {
+        slopes_[k] = 1.0;
       }
     }
   }
@@ -41,8 +42,8 @@ class Dual {
   [[nodiscard]] double value() const noexcept { return value_; }
   [[nodiscard]] double slope(int k) const noexcept { return slopes_[k]; }
 
-  /// Parameters that count as independent variables for this thread, by their place in memory; filled from the front,
-  /// null for the rest. Set by lab::TurnedKnobs (lab/sensitivity.hpp).
+  /// Parameters that count as independent variables for this thread, by their place in memory; null for none.
+  /// Set by lab::TurnedKnobs (lab/sensitivity.hpp).
   inline static constinit thread_local std::array<Parameter const*, static_cast<std::size_t>(N)> knobs{};
 
   [[nodiscard]] friend Dual operator+(Dual const& a, Dual const& b) noexcept {
@@ -69,7 +70,9 @@ class Dual {
     return {r, a.slopes_ * (r > 0.0 ? 0.5 / r : 0.0)};
   }
   [[nodiscard]] friend Dual sin(Dual const& a) noexcept { return {std::sin(a.value_), a.slopes_ * std::cos(a.value_)}; }
-  [[nodiscard]] friend Dual cos(Dual const& a) noexcept { return {std::cos(a.value_), a.slopes_ * -std::sin(a.value_)}; }
+  [[nodiscard]] friend Dual cos(Dual const& a) noexcept {
+    return {std::cos(a.value_), a.slopes_ * -std::sin(a.value_)};
+  }
 
   [[nodiscard]] friend bool operator<(Dual const& a, Dual const& b) noexcept { return a.value_ < b.value_; }
   [[nodiscard]] friend bool operator>(Dual const& a, Dual const& b) noexcept { return a.value_ > b.value_; }

@@ -27,13 +27,14 @@ namespace wend::inline v0::lab {
 ///
 /// There is no empty interval. Where an operation is defined for some members only, the result is that of those; where
 /// it is defined for none (the root of what is negative, a division by zero), and for ends that are not numbers or in
-/// the wrong order, it is the whole line: too much, but never wrong. A divisor with zero inside its ends gives the whole
-/// line too.
+/// the wrong order, it is the whole line: too much, but never wrong. A divisor with zero inside its ends gives the
+/// whole line too.
 ///
 /// Kept as the pair (-low, high), so that one instruction works on both ends, and outward is upward for both. Each
-/// operation rounds to nearest as ever and then steps outward by slightly more than half a unit in the last place, which
-/// reaches the next number and never passes the one after (Rump, Zimmermann, Boldo and Melquiond 2009, BIT 49:419-431).
-/// So there is no rounding mode to set, or to forget. It takes a compiler that keeps to IEEE 754: no -ffast-math.
+/// operation rounds to nearest as ever and then steps outward by slightly more than half a unit in the last place,
+/// which reaches the next number and never passes the one after (Rump, Zimmermann, Boldo and Melquiond 2009, BIT
+/// 49:419-431). So there is no rounding mode to set, or to forget. It takes a compiler that keeps to IEEE 754: no
+/// -ffast-math.
 ///
 /// An end that is zero for certain stays exactly zero, so that the product of what is not negative is not negative.
 template <typename Rounded>
@@ -49,9 +50,9 @@ class BasicInterval {
   // u (1 + 2u), a little more than half a unit in the last place of 1.
   static constexpr double unit = static_cast<double>(std::numeric_limits<Rounded>::epsilon()) / 2.0;
   static constexpr double step = in_double ? unit * (1.0 + 2.0 * unit) : unit * (1.0 + 0x1p-20);
-  // No step is shorter: in double twice the least positive number, since up to 2^-1020 half a unit in the last place
-  // would itself be rounded away.
-  static constexpr double least_step = (in_double ? 2.0 : 1.0) * static_cast<double>(std::numeric_limits<Rounded>::denorm_min());
+  // On top of it, the least positive number: what was rounded to zero has to leave it, and a step so short that it has
+  // lost its own digits (up to 2^-969 in double) would end half way to the next number, and be rounded back.
+  static constexpr double tiny = static_cast<double>(std::numeric_limits<Rounded>::denorm_min());
 
  public:
   using RoundedAs = Rounded;
@@ -78,8 +79,8 @@ class BasicInterval {
 
   [[nodiscard]] double low() const noexcept { return -ends_[0]; }
   [[nodiscard]] double high() const noexcept { return ends_[1]; }
-  /// A member: the middle, rounded to nearest. Where there is no bound on a side, 0 if that is inside, else the bound on
-  /// the other side.
+  /// A member: the middle, rounded to nearest. Where there is no bound on a side, 0 if that is inside, else the bound
+  /// on the other side.
   [[nodiscard]] double middle() const noexcept {
     return bounded() ? 0.5 * high() - 0.5 * ends_[0] : std::clamp(0.0, low(), high());
   }
@@ -94,7 +95,9 @@ class BasicInterval {
   [[nodiscard]] friend BasicInterval operator+(BasicInterval const& a, BasicInterval const& b) noexcept {
     return sum(a.ends_, b.ends_);
   }
-  [[nodiscard]] friend BasicInterval operator-(BasicInterval const& a) noexcept { return BasicInterval(swapped(a.ends_)); }
+  [[nodiscard]] friend BasicInterval operator-(BasicInterval const& a) noexcept {
+    return BasicInterval(swapped(a.ends_));
+  }
   [[nodiscard]] friend BasicInterval operator-(BasicInterval const& a, BasicInterval const& b) noexcept {
     return sum(a.ends_, swapped(b.ends_));
   }
@@ -164,8 +167,8 @@ class BasicInterval {
     return a.bounded() ? Trilean::yes() : Trilean::both();
   }
 
-  /// x / sqrt(x^2 + y^2), tight: increasing in x, and moving towards 0 as |y| grows, so its bounds lie at corners. (0, 0),
-  /// which has no direction, adds nothing.
+  /// x / sqrt(x^2 + y^2), tight: increasing in x, and moving towards 0 as |y| grows, so its bounds lie at corners.
+  /// (0, 0), which has no direction, adds nothing.
   [[nodiscard]] friend BasicInterval cosine_of(BasicInterval const& x, BasicInterval const& y) noexcept {
     // Two squares, a sum, a root, a reciprocal and a product: four roundings to first order, the rest in the fifth.
     constexpr double slack = 5.0 * unit;
@@ -173,7 +176,7 @@ class BasicInterval {
     Ends const across = x.ends_ > 0.0 ? both(size[0]) : both(size[1]);
     Ends const far = larger(absolute(x.ends_), absolute(across));
     Ends const ratio = x.ends_ / roots(x.ends_ * x.ends_ + across * across);
-    Ends const end = ratio + (absolute(ratio) * slack + both(least_step));
+    Ends const end = ratio + (absolute(ratio) * slack + both(tiny));
     Ends const limit = x.ends_ > 0.0 ? both(1.0 + slack) : Ends{};
     // Beyond these sizes a square would lose digits. A ratio that is not a number is not smaller than the limit.
     return BasicInterval(smaller(larger(smaller(far, both(1e140)), both(1e-140)) == far ? end : both(infinity), limit));
@@ -186,8 +189,8 @@ class BasicInterval {
 
   [[nodiscard]] static Ends both(double x) noexcept { return Ends{x, x}; }
   [[nodiscard]] static Ends swapped(Ends const& a) noexcept { return Ends{a[1], a[0]}; }
-  // One instruction each; b where a is not a number. Named outright for SSE2, because where b is a constant g++ 12 makes
-  // four instructions of the expression.
+  // One instruction each; b where a is not a number. Named outright for SSE2, because where b is a constant g++ 12
+  // makes four instructions of the expression.
 #ifdef __SSE2__
   [[nodiscard]] static Ends larger(Ends const& a, Ends const& b) noexcept { return _mm_max_pd(a, b); }
   [[nodiscard]] static Ends smaller(Ends const& a, Ends const& b) noexcept { return _mm_min_pd(a, b); }
@@ -220,15 +223,16 @@ class BasicInterval {
     Ends const rounded = a + b;
     Ends const size = absolute(rounded);
     if constexpr (in_double) {  // a sum that is zero is exact
-      return clipped(held(rounded + larger(size * step, smaller(size, both(least_step)))));
+      return clipped(held(rounded + (size * step + smaller(size, both(tiny)))));
     } else {  // so is one so small that float has no digits for it
       return clipped(held(rounded + size * step));
     }
   }
   // For ends that may have been rounded to zero; those for which `over` is not over zero are not over zero.
   [[nodiscard]] static BasicInterval outward(Ends const& a, Ends const& over) noexcept {
+    Ends const from = held(a);
     Ends const limit = over > 0.0 ? both(infinity) : Ends{};
-    return clipped(smaller(held(a) + larger(absolute(a) * step, both(least_step)), limit));
+    return clipped(smaller(from + (absolute(from) * step + both(tiny)), limit));
   }
 
   Ends ends_{};
@@ -258,7 +262,30 @@ namespace Eigen {
 /// Lets an interval be the scalar of an Eigen vector.
 template <typename Rounded>
 struct NumTraits<wend::lab::BasicInterval<Rounded>> : GenericNumTraits<wend::lab::BasicInterval<Rounded>> {
-  enum { IsInteger = 0, IsSigned = 1, IsComplex = 0, RequireInitialization = 1, ReadCost = 2, AddCost = 4, MulCost = 8 };
+  enum {
+    IsInteger = 0,
+    IsSigned = 1,
+    IsComplex = 0,
+    RequireInitialization = 1,
+    ReadCost = 2,
+    AddCost = 4,
+    MulCost = 8
+  };
 };
 
 }  // namespace Eigen
+
+namespace wend::inline v0::lab {
+
+namespace detail {
+
+// A number of the plant as the loop gets it: rounded to float.
+[[nodiscard]] inline FloatInterval as_float(Interval const& x) { return FloatInterval(x) * FloatInterval(1.0F); }
+[[nodiscard]] inline Vec2<FloatInterval> as_float(Vec2<Interval> const& v) {
+  return {as_float(v.x()), as_float(v.y())};
+}
+[[nodiscard]] inline Vec2<Interval> exactly(Vec2<double> const& v) { return {Interval(v.x()), Interval(v.y())}; }
+
+}  // namespace detail
+
+}  // namespace wend::inline v0::lab

@@ -14,7 +14,8 @@
 namespace wend::inline v0::lab {
 
 /// The world at time 0 with runs on it: discs, paths with a dot wherever a guard changed its mind, start, goal, and a
-/// legend. All runs must share start and goal. `title` may be any text. Moving discs get a line as long as 5 s of travel.
+/// legend. All runs must share start and goal. `title` may be any text. Moving discs get a line as long as 5 s of
+/// travel.
 [[nodiscard]] inline std::string picture(std::string_view title, World const& world, Trip const& trip,
                                          std::vector<DrawnRun> const& runs, double width = 960.0) {
   Vec2<double> const& start = trip.start.position;

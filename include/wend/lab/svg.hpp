@@ -1,4 +1,5 @@
-// wend/lab/svg.hpp - the pieces that pictures of a world share: text, numbers, axes, discs, paths. Metres in, pixels out.
+// wend/lab/svg.hpp - the pieces that pictures of a world share: text, numbers, axes, discs, paths. Metres in, pixels
+// out.
 #pragma once
 
 #include <array>
@@ -111,8 +112,8 @@ inline std::string svg_axes(Sheet const& s) {
   for (double k = std::ceil(s.bottom / step); k * step <= s.top; k += 1.0) {
     double const y = k * step;
     svg += "<line x1=\"" + fixed(s.x(s.left)) + "\" y1=\"" + fixed(s.y(y)) + "\" x2=\"" + fixed(s.x(s.right)) +
-           "\" y2=\"" + fixed(s.y(y)) + "\"/><text stroke=\"none\" text-anchor=\"end\" x=\"" + fixed(s.x(s.left) - 6.0) +
-           "\" y=\"" + fixed(s.y(y) + 4.0) + "\">" + fixed(y + 0.0, decimals) + "</text>\n";
+           "\" y2=\"" + fixed(s.y(y)) + "\"/><text stroke=\"none\" text-anchor=\"end\" x=\"" +
+           fixed(s.x(s.left) - 6.0) + "\" y=\"" + fixed(s.y(y) + 4.0) + "\">" + fixed(y + 0.0, decimals) + "</text>\n";
   }
   return svg + "</g>\n";
 }

@@ -5,6 +5,8 @@
 #include <cmath>
 #include <limits>
 #include <span>
+#include <stdexcept>
+#include <string>
 #include <vector>
 
 #include "wend/disc.hpp"
@@ -52,6 +54,26 @@ struct World {
     return least;
   }
 };
+
+/// A rectangle of positions, metres.
+struct Region {
+  Vec2<double> low{0.0, 0.0};
+  Vec2<double> high{0.0, 0.0};
+};
+
+/// Throws std::invalid_argument for a world with discs that move, or more of them than `capacity`; `who` is named in the
+/// message. For whatever takes a world as a policy would find it at any time.
+inline void expect_still(char const* who, World const& world, int capacity) {
+  if (world.discs.size() > static_cast<std::size_t>(capacity)) {
+    throw std::invalid_argument(std::string("wend: ") + who + ": the world has more discs than Capacity; write " + who +
+                                "<" + std::to_string(world.discs.size()) + ">(...)");
+  }
+  for (WorldDisc const& d : world.discs) {
+    if (d.velocity.squaredNorm() > 0.0) {
+      throw std::invalid_argument(std::string("wend: ") + who + ": expected discs at rest, found one that moves");
+    }
+  }
+}
 
 /// Metres along a ray to the first of some discs; infinite when it meets none.
 [[nodiscard]] inline double cast_ray(std::span<Disc<double> const> discs, Vec2<double> const& origin,
