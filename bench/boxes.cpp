@@ -16,7 +16,6 @@
 #include <cstdint>
 #include <cstdio>
 #include <limits>
-#include <map>
 #include <string>
 #include <string_view>
 #include <utility>
@@ -25,6 +24,7 @@
 #include <benchmark/benchmark.h>
 
 #include "../examples/policies.hpp"
+#include "medians.hpp"
 #include "wend/lab/heading_range.hpp"
 #include "wend/lab/interval.hpp"
 #include "wend/lab/random.hpp"
@@ -313,29 +313,6 @@ class RoundingFor {
   ~RoundingFor() { std::fesetround(FE_TONEAREST); }
 };
 
-// The table as ever, and the median time of each benchmark put aside.
-class Reporter : public benchmark::ConsoleReporter {
- public:
-  Reporter() : ConsoleReporter(OO_Tabular) {}
-
-  void ReportRuns(std::vector<Run> const& runs) override {
-    for (Run const& run : runs) {
-      if (run.aggregate_name == "median") {
-        medians_[run.run_name.function_name] = run.GetAdjustedCPUTime();
-      }
-    }
-    ConsoleReporter::ReportRuns(runs);
-  }
-
-  [[nodiscard]] double median(std::string const& name) const {
-    auto const at = medians_.find(name);
-    return at == medians_.end() ? 0.0 : at->second;
-  }
-
- private:
-  std::map<std::string, double> medians_;
-};
-
 template <typename S, typename Policy>
 void add(std::string const& name, Policy const& policy, std::vector<Box<S>> const& boxes) {
   benchmark::RegisterBenchmark(name.c_str(), [&policy, &boxes](benchmark::State& state) {
@@ -416,27 +393,16 @@ int main(int argc, char** argv) {
     return 1;
   }
 
-  std::vector<char*> arguments{argv[0]};
-  std::array<std::string, 4> defaults{"--benchmark_repetitions=11", "--benchmark_enable_random_interleaving=true",
-                                      "--benchmark_min_time=0.05", "--benchmark_report_aggregates_only=true"};
-  for (std::string& option : defaults) {
-    arguments.push_back(option.data());
-  }
-  arguments.insert(arguments.end(), argv + 1, argv + argc);  // a later option overrides
-  int count = static_cast<int>(arguments.size());
-  benchmark::Initialize(&count, arguments.data());
-  if (benchmark::ReportUnrecognizedArguments(count, arguments.data())) {
+  Medians medians;
+  if (!medians.run(argc, argv)) {
     return 1;
   }
-  Reporter reporter;
-  benchmark::RunSpecifiedBenchmarks(&reporter);
-  benchmark::Shutdown();
 
   std::printf("\n%-14s %18s %12s %13s\n", "", "million boxes / s", "times MPFI", "times Boost");
-  for_each_policy([&reporter](char const* name, auto const&) {
-    double const own = reporter.median(std::string("interval/") + name);
-    double const mpfi = reporter.median(std::string("mpfi/") + name);
-    double const boost = reporter.median(std::string("boost/") + name);
+  for_each_policy([&medians](char const* name, auto const&) {
+    double const own = medians.of(std::string("interval/") + name);
+    double const mpfi = medians.of(std::string("mpfi/") + name);
+    double const boost = medians.of(std::string("boost/") + name);
     if (own > 0.0) {
       std::printf("%-14s %18.2f", name, box_count / own);  // microseconds for all of them
       mpfi > 0.0 ? std::printf(" %12.1f", mpfi / own) : std::printf(" %12s", "-");

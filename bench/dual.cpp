@@ -8,7 +8,6 @@
 #include <cmath>
 #include <cstdint>
 #include <cstdio>
-#include <map>
 #include <string>
 #include <utility>
 #include <vector>
@@ -16,6 +15,7 @@
 #include <benchmark/benchmark.h>
 
 #include "../examples/policies.hpp"
+#include "medians.hpp"
 #include "wend/lab/dual.hpp"
 #include "wend/lab/random.hpp"
 #include "wend/wend.hpp"
@@ -72,29 +72,6 @@ template <typename S, typename Policy>
   return wend::evaluate(policy, percept, memory);
 }
 
-// The table as ever, and the median time of each benchmark put aside.
-class Reporter : public benchmark::ConsoleReporter {
- public:
-  Reporter() : ConsoleReporter(OO_Tabular) {}
-
-  void ReportRuns(std::vector<Run> const& runs) override {
-    for (Run const& run : runs) {
-      if (run.aggregate_name == "median") {
-        medians_[run.run_name.function_name] = run.GetAdjustedCPUTime();
-      }
-    }
-    ConsoleReporter::ReportRuns(runs);
-  }
-
-  [[nodiscard]] double median(std::string const& name) const {
-    auto const at = medians_.find(name);
-    return at == medians_.end() ? 0.0 : at->second;
-  }
-
- private:
-  std::map<std::string, double> medians_;
-};
-
 template <typename F>
 void for_each_policy(F const& f) {
   f("hard switch", policies::hard_switch);
@@ -127,29 +104,18 @@ int main(int argc, char** argv) {
   add_all<Dual<4>>("dual 4");
   add_all<Dual<8>>("dual 8");
 
-  std::vector<char*> arguments{argv[0]};
-  std::array<std::string, 4> defaults{"--benchmark_repetitions=15", "--benchmark_enable_random_interleaving=true",
-                                      "--benchmark_min_time=0.05", "--benchmark_report_aggregates_only=true"};
-  for (std::string& option : defaults) {
-    arguments.push_back(option.data());
-  }
-  arguments.insert(arguments.end(), argv + 1, argv + argc);  // a later option overrides
-  int count = static_cast<int>(arguments.size());
-  benchmark::Initialize(&count, arguments.data());
-  if (benchmark::ReportUnrecognizedArguments(count, arguments.data())) {
+  Medians medians;
+  if (!medians.run(argc, argv)) {
     return 1;
   }
-  Reporter reporter;
-  benchmark::RunSpecifiedBenchmarks(&reporter);
-  benchmark::Shutdown();
 
   std::printf("\n%-14s %12s %12s %12s %12s\n", "", "double, ns", "N = 2", "N = 4", "N = 8");
-  for_each_policy([&reporter](char const* name, auto const&) {
-    double const plain = reporter.median(std::string("double/") + name);
+  for_each_policy([&medians](char const* name, auto const&) {
+    double const plain = medians.of(std::string("double/") + name);
     if (plain > 0.0) {
       std::printf("%-14s %12.1f", name, plain * 1000.0 / scene_count);  // medians are in microseconds
       for (char const* dual : {"dual 2/", "dual 4/", "dual 8/"}) {
-        std::printf(" %11.2fx", reporter.median(std::string(dual) + name) / plain);
+        std::printf(" %11.2fx", medians.of(std::string(dual) + name) / plain);
       }
       std::printf("\n");
     }

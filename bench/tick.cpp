@@ -11,13 +11,13 @@
 #include <cmath>
 #include <cstdint>
 #include <cstdio>
-#include <map>
 #include <string>
 #include <string_view>
 #include <vector>
 
 #include <benchmark/benchmark.h>
 
+#include "medians.hpp"
 #include "textbook.h"  // takes in by_hand.h
 #include "wend/wend.hpp"
 
@@ -76,7 +76,7 @@ class Random {
   return hand_decide(&scene, &memory);
 }
 [[gnu::noinline, gnu::flatten]] textbook_course decide_textbook(hand_scene const& scene, float heading,
-                                                                      textbook_memory& memory) noexcept {
+                                                                textbook_memory& memory) noexcept {
   return textbook_decide(&scene, heading, &memory);
 }
 [[gnu::noinline, gnu::flatten]] wend::Percept<float, HAND_DISCS> look_only(Scene const& scene) noexcept {
@@ -148,8 +148,7 @@ int disagreements(Table table, std::array<int, 3>& met) {
     for (std::size_t k = 0; k < table.scenes.size(); ++k) {
       wend::Course<float> const course = decide_composed(table.scenes[k], table.memories[k]);
       hand_course const hand = decide_by_hand(table.by_hand[k], table.hand_memories[k]);
-      textbook_course const textbook =
-          decide_textbook(table.by_hand[k], table.headings[k], table.textbook_memories[k]);
+      textbook_course const textbook = decide_textbook(table.by_hand[k], table.headings[k], table.textbook_memories[k]);
       bool const as_by_hand = same_bits(course.direction.x(), hand.x) && same_bits(course.direction.y(), hand.y) &&
                               same_bits(course.confidence, hand.confidence);
       float const tolerance = 1.0e-5F / std::max(course.confidence, 1.0e-3F);
@@ -173,38 +172,6 @@ void time_over(benchmark::State& state, Scenes const& scenes, Memories memories,
   }
   state.SetItemsProcessed(state.iterations() * static_cast<std::int64_t>(scenes.size()));
 }
-
-// The table as ever, and the median time of each benchmark put aside.
-class Reporter : public benchmark::ConsoleReporter {
- public:
-  Reporter() : ConsoleReporter(OO_Tabular) {}
-
-  void ReportRuns(std::vector<Run> const& runs) override {
-    for (Run const& run : runs) {
-      if (run.aggregate_name == "median") {
-        medians_[run.run_name.function_name] = run.GetAdjustedCPUTime();
-      }
-    }
-    ConsoleReporter::ReportRuns(runs);
-  }
-
-  void print_ratio(char const* label, std::string const& over, std::string const& under) const {
-    auto const a = medians_.find(over);
-    auto const b = medians_.find(under);
-    if (a != medians_.end() && b != medians_.end()) {
-      std::printf("%-22s %.3f\n", label, a->second / b->second);
-    }
-  }
-
-  void print_times() const {
-    for (auto const& [name, time] : medians_) {
-      std::printf("%-22s %.2f ns\n", name.c_str(), time * 1000.0 / scene_count);  // medians_ are in microseconds
-    }
-  }
-
- private:
-  std::map<std::string, double> medians_;
-};
 
 int run_once(Table table) {
   std::vector<LoopMemory> loop_memories(table.scenes.size());
@@ -240,19 +207,6 @@ int main(int argc, char** argv) {
   std::printf("agreed on %d decisions: %d beside a disc, %d blended, %d straight to the goal or away\n",
               2 * scene_count, met[0], met[1], met[2]);
 
-  std::vector<char*> arguments{argv[0]};
-  std::array<std::string, 4> defaults{"--benchmark_repetitions=21", "--benchmark_enable_random_interleaving=true",
-                                      "--benchmark_min_time=0.05", "--benchmark_report_aggregates_only=true"};
-  for (std::string& option : defaults) {
-    arguments.push_back(option.data());
-  }
-  arguments.insert(arguments.end(), argv + 1, argv + argc);  // a later option overrides
-  int count = static_cast<int>(arguments.size());
-  benchmark::Initialize(&count, arguments.data());
-  if (benchmark::ReportUnrecognizedArguments(count, arguments.data())) {
-    return 1;
-  }
-
   std::vector<LoopMemory> const loop_memories(table.scenes.size());
   auto const add = [](char const* name, auto const& scenes, auto const& memories, auto decide) {
     benchmark::RegisterBenchmark(name, [&scenes, &memories, decide](benchmark::State& state) {
@@ -272,12 +226,15 @@ int main(int argc, char** argv) {
   add("whole_tick", table.scenes, loop_memories,
       [](std::size_t, Scene const& scene, LoopMemory& memory) { return whole_tick(scene, memory); });
 
-  Reporter reporter;
-  benchmark::RunSpecifiedBenchmarks(&reporter);
-  benchmark::Shutdown();
+  Medians medians;
+  if (!medians.run(argc, argv)) {
+    return 1;
+  }
   std::printf("\none decision, median:\n");
-  reporter.print_times();
-  reporter.print_ratio("composed / by hand", "composed", "by_hand");
-  reporter.print_ratio("textbook / composed", "textbook", "composed");
+  for (auto const& [name, time] : medians.all()) {
+    std::printf("%-22s %.2f ns\n", name.c_str(), time * 1000.0 / scene_count);  // medians are in microseconds
+  }
+  std::printf("%-22s %.3f\n", "composed / by hand", medians.of("composed") / medians.of("by_hand"));
+  std::printf("%-22s %.3f\n", "textbook / composed", medians.of("textbook") / medians.of("composed"));
   return 0;
 }

@@ -1,4 +1,5 @@
-// The four policies that the examples compare: the same fields, arbitrated in four ways. Thresholds in metres of clearance.
+// The four policies that the examples compare: the same fields, arbitrated in four ways. Thresholds in metres of
+// clearance.
 #pragma once
 
 #include <wend/wend.hpp>

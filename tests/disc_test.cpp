@@ -223,20 +223,19 @@ TEST_CASE_TEMPLATE("ray_to_disc knows the tangent, the inside, the edge, behind 
   CHECK(ray(0.0F, 1.0F, 1.0F, 0.0F, disc) == 3.0);  // tangent, exact in these numbers
   CHECK(ray(0.0F, -1.0F, 1.0F, 0.0F, disc) == 3.0);
   CHECK(ray(0.0F, std::nextafter(1.0F, 2.0F), 1.0F, 0.0F, disc) == miss);
-  CHECK(ray(3.0F, 0.0F, 0.6F, 0.8F, disc) == 0.0);   // at the centre
+  CHECK(ray(3.0F, 0.0F, 0.6F, 0.8F, disc) == 0.0);  // at the centre
   CHECK(ray(3.5F, 0.25F, 1.0F, 0.0F, disc) == 0.0);  // inside, looking out
-  CHECK(ray(2.0F, 0.0F, 1.0F, 0.0F, disc) == 0.0);   // on the edge, looking in
-  CHECK(ray(4.0F, 0.0F, 1.0F, 0.0F, disc) == 0.0);   // on the edge, looking out: touching is a hit
+  CHECK(ray(2.0F, 0.0F, 1.0F, 0.0F, disc) == 0.0);  // on the edge, looking in
+  CHECK(ray(4.0F, 0.0F, 1.0F, 0.0F, disc) == 0.0);  // on the edge, looking out: touching is a hit
   CHECK(ray(5.0F, 0.0F, 1.0F, 0.0F, disc) == miss);  // behind
   CHECK(ray(0.0F, 0.0F, -1.0F, 0.0F, disc) == miss);
   CHECK(ray(0.0F, 2.0F, 1.0F, 0.0F, disc) == miss);  // beside
   CHECK(ray(0.0F, 0.0F, 0.0F, 1.0F, disc) == miss);
   CHECK(ray(0.0F, 0.0F, 1.0F, 0.0F, disc_at<S>(4.0F, 0.0F, 0.0F)) == 4.0);  // a point in the way
-  CHECK(ray(0.0F, 0.0F, 1.0F, 0.0F, Disc<S>{}) >= 0.5 * miss);              // the disc that stands for none
+  CHECK(ray(0.0F, 0.0F, 1.0F, 0.0F, Disc<S>{}) >= 0.5 * miss);  // the disc that stands for none
 }
 
-TEST_CASE_TEMPLATE("a set keeps the nearest discs in whatever order they come, and counts the rest", S, float,
-                   double) {
+TEST_CASE_TEMPLATE("a set keeps the nearest discs in whatever order they come, and counts the rest", S, float, double) {
   constexpr int capacity = 6;
   Source source(4);
   int wrong = 0;
@@ -263,7 +262,9 @@ TEST_CASE_TEMPLATE("a set keeps the nearest discs in whatever order they come, a
         wrong += std::count_if(set.begin(), set.end(),
                                [&d](Disc<S> const& kept) {
                                  return kept.centre == d.centre.cast<S>() && kept.radius == S(d.radius);
-                               }) == 1 ? 0 : 1;
+                               }) == 1
+                     ? 0
+                     : 1;
       }
       std::shuffle(all.begin(), all.end(), source.random());
     }

@@ -140,8 +140,7 @@ int first_unsound(Field const& field, std::vector<Plain> const& odd) {
     Scene<S> const scene =
         scenes::gather<S>([&](int k) { return odd[(i + static_cast<std::size_t>(k)) % odd.size()]; });
     wend::memory_t<Field, S> fresh;
-    if (!all_sound(scenes::answer(field, scene, fresh)) ||
-        !all_sound(scenes::answer(field, scene, carried))) {
+    if (!all_sound(scenes::answer(field, scene, fresh)) || !all_sound(scenes::answer(field, scene, carried))) {
       return static_cast<int>(i);
     }
   }
@@ -218,10 +217,9 @@ constexpr bool takes_no_byte = std::is_empty_v<wend::memory_t<Field, float>>;
 template <typename Field>
 constexpr std::size_t bytes = sizeof(wend::memory_t<Field, float>);
 
-constexpr auto two_shares =
-    wend::blend(wend::share(1.0F, wend::toward_goal{}), wend::share(1.0F, wend::toward_goal{}));
-constexpr auto nested_shares = wend::blend(wend::share(1.0F, two_shares), wend::share(1.0F, two_shares),
-                                           wend::share(1.0F, wend::toward_goal{}));
+constexpr auto two_shares = wend::blend(wend::share(1.0F, wend::toward_goal{}), wend::share(1.0F, wend::toward_goal{}));
+constexpr auto nested_shares =
+    wend::blend(wend::share(1.0F, two_shares), wend::share(1.0F, two_shares), wend::share(1.0F, wend::toward_goal{}));
 constexpr auto of_no_memory = wend::priority(nested_shares, two_shares, nested_shares, wend::toward_goal{});
 
 static_assert(bytes<wend::past_disc> == 12, "a direction of two floats, and the side");

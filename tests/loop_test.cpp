@@ -137,9 +137,9 @@ class Random {
     std::uint32_t const sign = bits() & 0x80000000U;
     switch (bits() % 8U) {
       case 0: return std::bit_cast<float>(sign | 0x7f800000U | (bits() & 0x007fffffU));  // not a number, any payload
-      case 1: return std::bit_cast<float>(sign | 0x7f800000U);                           // infinity
-      case 2: return std::bit_cast<float>(sign | (bits() & 0x007fffffU));                // denormal or zero
-      case 3: return std::bit_cast<float>(sign | 0x7f7fffffU);                           // the greatest
+      case 1: return std::bit_cast<float>(sign | 0x7f800000U);  // infinity
+      case 2: return std::bit_cast<float>(sign | (bits() & 0x007fffffU));  // denormal or zero
+      case 3: return std::bit_cast<float>(sign | 0x7f7fffffU);  // the greatest
       default: return std::bit_cast<float>(bits());
     }
   }
@@ -177,8 +177,8 @@ TEST_CASE_TEMPLATE("a pose, heading or goal that cannot be one makes the loop bl
     bad.push_back(at<S>(0.0F, 0.0F, 1.0F, 0.0F, x, 1.0F));
     bad.push_back(at<S>(0.0F, 0.0F, 1.0F, 0.0F, 5.0F, x));
   }
-  bad.push_back(at<S>(0.0F, 0.0F, 0.0F, 0.0F, 5.0F, 1.0F));    // no heading
-  bad.push_back(at<S>(0.0F, 0.0F, 2.0F, 0.0F, 5.0F, 1.0F));    // no unit vector
+  bad.push_back(at<S>(0.0F, 0.0F, 0.0F, 0.0F, 5.0F, 1.0F));  // no heading
+  bad.push_back(at<S>(0.0F, 0.0F, 2.0F, 0.0F, 5.0F, 1.0F));  // no unit vector
   bad.push_back(at<S>(0.0F, 0.0F, 0.5F, 0.5F, 5.0F, 1.0F));
   bad.push_back(at<S>(0.0F, 0.0F, 1.0F, 0.0F, 1.0e7F, 0.0F));  // a goal that is beyond far_away
   bad.push_back(at<S>(3.0e38F, 0.0F, 1.0F, 0.0F, -3.0e38F, 0.0F));
@@ -603,13 +603,12 @@ TEST_CASE_TEMPLATE("machines in lanes do what each does alone, bit for bit over 
     auto const of = [&](auto const& f) {
       return numbers::make<S>([&](int k) { return f(now[static_cast<std::size_t>(k)]); });
     };
-    Situation<S> const all{{{of([](auto const& s) { return s.pose.position.x(); }),
-                             of([](auto const& s) { return s.pose.position.y(); })},
-                            {of([](auto const& s) { return s.pose.heading.x(); }),
-                             of([](auto const& s) { return s.pose.heading.y(); })}},
-                           {of([](auto const& s) { return s.goal.x(); }), of([](auto const& s) { return s.goal.y(); })},
-                           of([](auto const& s) { return s.dt; }),
-                           of([](auto const& s) { return s.age; })};
+    Situation<S> const all{
+        {{of([](auto const& s) { return s.pose.position.x(); }), of([](auto const& s) { return s.pose.position.y(); })},
+         {of([](auto const& s) { return s.pose.heading.x(); }), of([](auto const& s) { return s.pose.heading.y(); })}},
+        {of([](auto const& s) { return s.goal.x(); }), of([](auto const& s) { return s.goal.y(); })},
+        of([](auto const& s) { return s.dt; }),
+        of([](auto const& s) { return s.age; })};
     DiscSet<S, 4> discs_together;  // one more than fits, so that lanes drop different ones
     for (std::size_t i = 0; i < 5; ++i) {
       discs_together.add({{of_run([i](Run const& run) { return run.discs[i].centre.x(); }),
@@ -655,7 +654,9 @@ TEST_CASE("double drives the same way as float") {
   for (int tick = 0; tick < 300; ++tick) {
     Situation<float> const now = machine.situation(6.0F, 0.5F);
     Situation<double> const same{{now.pose.position.cast<double>(), now.pose.heading.cast<double>()},
-                                 now.goal.cast<double>(), static_cast<double>(now.dt), static_cast<double>(now.age)};
+                                 now.goal.cast<double>(),
+                                 static_cast<double>(now.dt),
+                                 static_cast<double>(now.age)};
     Command<float> const command = loop.tick(now, discs, memory);
     Command<double> const other = loop.tick(same, fine, of_fine);
     REQUIRE(std::abs(static_cast<double>(command.wheels.left) - other.wheels.left) < 2.0e-3);

@@ -34,15 +34,41 @@ struct Memory {
 
 template <int Count>
 struct Row;
-template <> struct Row<1> { int a; };
-template <> struct Row<2> { int a, b; };
-template <> struct Row<3> { int a, b, c; };
-template <> struct Row<4> { int a, b, c, d; };
-template <> struct Row<5> { int a, b, c, d, e; };
-template <> struct Row<6> { int a, b, c, d, e, f; };
-template <> struct Row<7> { int a, b, c, d, e, f, g; };
-template <> struct Row<8> { int a, b, c, d, e, f, g, h; };
-struct NineOfThem { int a, b, c, d, e, f, g, h, i; };
+template <>
+struct Row<1> {
+  int a;
+};
+template <>
+struct Row<2> {
+  int a, b;
+};
+template <>
+struct Row<3> {
+  int a, b, c;
+};
+template <>
+struct Row<4> {
+  int a, b, c, d;
+};
+template <>
+struct Row<5> {
+  int a, b, c, d, e;
+};
+template <>
+struct Row<6> {
+  int a, b, c, d, e, f;
+};
+template <>
+struct Row<7> {
+  int a, b, c, d, e, f, g;
+};
+template <>
+struct Row<8> {
+  int a, b, c, d, e, f, g, h;
+};
+struct NineOfThem {
+  int a, b, c, d, e, f, g, h, i;
+};
 
 template <typename T>
 constexpr int count_of = wend::detail::member_count<T>();

@@ -30,8 +30,8 @@ static_assert(!wend::Number<char const*> && !wend::Number<wend::lab::Pack<4>::Ma
 constexpr float nan_f = std::bit_cast<float>(std::uint32_t{0x7fc00000});
 constexpr float inf_f = std::bit_cast<float>(std::uint32_t{0x7f800000});
 
-constexpr std::array<float, 12> specials{0.0F, -0.0F, 1.0F, -1.0F, 0.5F, 3.0e38F, -3.0e38F, 1.0e-45F, -1.0e-45F,
-                                         nan_f, inf_f, -inf_f};
+constexpr std::array<float, 12> specials{0.0F,     -0.0F,    1.0F,      -1.0F, 0.5F,  3.0e38F,
+                                         -3.0e38F, 1.0e-45F, -1.0e-45F, nan_f, inf_f, -inf_f};
 
 float special(int i) { return specials[static_cast<std::size_t>(i) % specials.size()]; }
 
@@ -86,8 +86,8 @@ TEST_CASE("finite agrees with the exponent field over every exponent") {
   }
   for (std::uint64_t sign : {0U, 1U}) {
     for (std::uint64_t exponent = 0; exponent <= 2047; ++exponent) {
-      for (std::uint64_t fraction : {std::uint64_t{0}, std::uint64_t{1}, std::uint64_t{0x8000000000000},
-                                     std::uint64_t{0xfffffffffffff}}) {
+      for (std::uint64_t fraction :
+           {std::uint64_t{0}, std::uint64_t{1}, std::uint64_t{0x8000000000000}, std::uint64_t{0xfffffffffffff}}) {
         InMemory<double> const x((sign << 63) | (exponent << 52) | fraction);
         wrong += wend::finite(*x) != (exponent < 2047) ? 1 : 0;
       }

@@ -26,9 +26,8 @@ using Discs = wend::DiscSet<S, capacity>;
 
 // A percept refers to its discs, so look takes none that is about to go.
 template <typename S, typename Set>
-concept CanLookAt = requires(wend::Pose<S> pose, Vec2<S> goal, Set set, S x) {
-  wend::look(pose, goal, static_cast<Set>(set), x, x);
-};
+concept CanLookAt =
+    requires(wend::Pose<S> pose, Vec2<S> goal, Set set, S x) { wend::look(pose, goal, static_cast<Set>(set), x, x); };
 static_assert(CanLookAt<float, Discs<float>&> && CanLookAt<float, Discs<float> const&>);
 static_assert(!CanLookAt<float, Discs<float>&&>, "a temporary set would be gone before the percept is read");
 static_assert(!CanLookAt<float, Discs<float> const&&>, "and so would one that a function returns as const");
@@ -108,9 +107,10 @@ double off(Scene<S> const& scene, int k) {
   Plain const at = plain(scene.pose.position, k);
   Plain const goal = plain(scene.goal, k);
   double const distance = between(at, goal);
-  double worst = std::max(std::abs(plain(got.goal_distance, k) - distance),
-                          between(plain(got.goal_direction, k),
-                                  {(goal.x - at.x) / distance, (goal.y - at.y) / distance}) * std::min(distance, 1.0));
+  double worst =
+      std::max(std::abs(plain(got.goal_distance, k) - distance),
+               between(plain(got.goal_direction, k), {(goal.x - at.x) / distance, (goal.y - at.y) / distance}) *
+                   std::min(distance, 1.0));
   auto const gap = [&](Disc<S> const& d) { return between(plain(d.centre, k), at) - plain(d.radius, k); };
   auto const nearest = std::min_element(scene.discs.begin(), scene.discs.end(),
                                         [&](auto const& a, auto const& b) { return gap(a) < gap(b); });
@@ -123,8 +123,8 @@ double off(Scene<S> const& scene, int k) {
     worst = std::max(worst, std::abs(gap(got.nearest) - clearance));
     Plain const centre = plain(got.nearest.centre, k);
     double const from = between(centre, at);
-    worst = std::max(worst, between(plain(got.away, k), {(at.x - centre.x) / from, (at.y - centre.y) / from}) *
-                                std::min(from, 1.0));
+    worst = std::max(
+        worst, between(plain(got.away, k), {(at.x - centre.x) / from, (at.y - centre.y) / from}) * std::min(from, 1.0));
   }
   return worst;
 }
@@ -139,8 +139,7 @@ bool same_in_lane(wend::Percept<S, capacity> const& all, wend::Percept<numbers::
          same(numbers::lane(all.nearest.radius, k), one.nearest.radius) &&
          same(numbers::lane(all.clearance, k), one.clearance) && same(numbers::lane(all.away, k), one.away) &&
          same(numbers::lane(all.dt, k), one.dt) && same(numbers::lane(all.robot_radius, k), one.robot_radius) &&
-         same(numbers::lane(all.goal, k), one.goal) &&
-         same(numbers::lane(all.pose.position, k), one.pose.position) &&
+         same(numbers::lane(all.goal, k), one.goal) && same(numbers::lane(all.pose.position, k), one.pose.position) &&
          same(numbers::lane(all.pose.heading, k), one.pose.heading);
 }
 
@@ -236,7 +235,8 @@ TEST_CASE_TEMPLATE("on the goal there is no direction to it, and at a disc's cen
     CHECK(plain(got.goal_distance, k) == 0.0);
     CHECK(between(plain(got.away, k), {0.0, 0.0}) == 0.0);
     CHECK(plain(got.clearance, k) == -1.0);
-    CHECK_FALSE(numbers::holds(got.away_confidence > S(0.0F), k));  // a disc without a direction is the clearance's business
+    CHECK_FALSE(
+        numbers::holds(got.away_confidence > S(0.0F), k));  // a disc without a direction is the clearance's business
   }
   wend::Pose<S> beside = pose;
   beside.position.x() = S(1.75F);

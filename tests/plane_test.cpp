@@ -8,8 +8,8 @@
 #include <limits>
 #include <random>
 
-#include <Eigen/Geometry>
 #include <doctest/doctest.h>
+#include <Eigen/Geometry>
 
 #include "numbers.hpp"
 #include "wend/number.hpp"
@@ -119,8 +119,8 @@ TEST_CASE_TEMPLATE("into_frame and out_of_frame are Eigen's isometry and its inv
     Vec2<S> const back = wend::out_of_frame(pose, there);
     for (int k = 0; k < numbers::lanes<S>(); ++k) {
       Complex const at = complex(pose.position, k);
-      Eigen::Isometry2d const frame =
-          Eigen::Translation2d(at.real(), at.imag()) * Eigen::Rotation2Dd(std::arg(complex(pose.heading, k)));
+      Eigen::Isometry2d const frame = Eigen::Translation2d(at.real(), at.imag()) *
+                                      Eigen::Rotation2Dd(std::arg(complex(pose.heading, k)));
       Eigen::Vector2d const plain(real(point.x(), k), real(point.y(), k));
       Eigen::Vector2d const by_eigen = frame.inverse() * plain;
       worst = std::max({worst, std::abs(complex(there, k) - Complex(by_eigen.x(), by_eigen.y())),
@@ -185,8 +185,8 @@ TEST_CASE_TEMPLATE("polar of zero and of what is no number has no direction", S,
   wend::Polar<S> const zero = wend::polar(Vec2<S>(S(0.0F), S(-0.0F)));
   CHECK(complex(zero.direction, 0) == Complex(0.0, 0.0));
   CHECK(real(zero.length, 0) == 0.0);
-  for (Vec2<S> const& v : {Vec2<S>(S(1.0F), S(nan)), Vec2<S>(S(nan), S(0.0F)), Vec2<S>(S(nan), S(nan)),
-                           Vec2<S>(S(inf), S(nan))}) {
+  for (Vec2<S> const& v :
+       {Vec2<S>(S(1.0F), S(nan)), Vec2<S>(S(nan), S(0.0F)), Vec2<S>(S(nan), S(nan)), Vec2<S>(S(inf), S(nan))}) {
     wend::Polar<S> const got = wend::polar(v);
     for (int k = 0; k < numbers::lanes<S>(); ++k) {
       CHECK(complex(got.direction, k) == Complex(0.0, 0.0));

@@ -21,6 +21,6 @@ int main() {
   memory_t<decltype(loop), float> memory;  // all that changes from tick to tick: 24 bytes
   Command<float> const command = loop.tick(now, discs, memory);
 
-  std::printf("%s: wheels %.2f and %.2f rad/s\n", text(status_of(command)), double{command.wheels.left},
-              double{command.wheels.right});
+  std::printf("%s: wheels %.2f and %.2f rad/s\n", text(status_of(command)), static_cast<double>(command.wheels.left),
+              static_cast<double>(command.wheels.right));
 }

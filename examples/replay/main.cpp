@@ -2,8 +2,8 @@
 //
 //   replay RECORD.csv [--goal X,Y] [--noise METRES] [--reach METRES] [--every N]
 //
-// RECORD.csv has the columns time_s, x_m, y_m, heading_rad and range_0_m to range_<n-1>_m, for n evenly spaced beams all
-// round, the first one along the nose; n is 8, 16, 36, 90, 180 or 360. An empty cell is a beam without an echo.
+// RECORD.csv has the columns time_s, x_m, y_m, heading_rad and range_0_m to range_<n-1>_m, for n evenly spaced beams
+// all round, the first one along the nose; n is 8, 16, 36, 90, 180 or 360. An empty cell is a beam without an echo.
 #include <algorithm>
 #include <array>
 #include <cmath>
@@ -81,8 +81,9 @@ void replay(lab::Table const& table, Options const& options) {
   memory_t<decltype(loop), float> memory;
   Situation<float> now;
   std::vector<double> const& last = table.rows.back();
-  now.goal = options.goal.empty() ? Vec2<float>(static_cast<float>(last[x]), static_cast<float>(last[y]))
-                                  : Vec2<float>(static_cast<float>(options.goal[0]), static_cast<float>(options.goal[1]));
+  now.goal = options.goal.empty()
+                 ? Vec2<float>(static_cast<float>(last[x]), static_cast<float>(last[y]))
+                 : Vec2<float>(static_cast<float>(options.goal[0]), static_cast<float>(options.goal[1]));
 
   std::printf("%8s %6s %6s %10s %8s %11s %7s %9s  %-14s %s\n", "time", "echoes", "discs", "clearance", "course",
               "confidence", "speed", "turn", "status", "because");
@@ -122,21 +123,21 @@ void replay(lab::Table const& table, Options const& options) {
   }
   std::printf("\n%zu rows, %d switches, least clearance seen %s m\n", table.rows.size(), switches,
               metres(least).c_str());
-  std::printf("What a recording would have led to is no proof of what a machine will do, and wend is no safety function.\n");
+  std::printf(
+      "What a recording would have led to is no proof of what a machine will do, and wend is no safety function.\n");
 }
 
 void replay(Options const& options) {
-  lab::Table const table =
-      lab::parse_table(options.record, lab::read_whole(options.record),
-                       [](std::string const& name) { return name.rfind("range_", 0) == 0; });
+  lab::Table const table = lab::parse_table(options.record, lab::read_whole(options.record),
+                                            [](std::string const& name) { return name.rfind("range_", 0) == 0; });
   std::size_t const first_range = table.column("range_0_m");
   std::size_t const beams = table.names.size() - first_range;
   for (std::size_t k = 0; k < beams; ++k) {
     std::string const name = "range_" + std::to_string(k) + "_m";
     if (table.names[first_range + k] != name) {
-      throw lab::FileError(options.record, table.names_line, 1, "expected the column '" + name + "' after '" +
-                                                     table.names[first_range + k - 1] + "', found '" +
-                                                     table.names[first_range + k] + "'");
+      throw lab::FileError(options.record, table.names_line, 1,
+                           "expected the column '" + name + "' after '" + table.names[first_range + k - 1] +
+                               "', found '" + table.names[first_range + k] + "'");
     }
   }
   if (table.rows.empty()) {

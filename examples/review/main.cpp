@@ -82,10 +82,10 @@ struct Reviewed {
   long long boxes = 0;
 };
 
-constexpr int most_discs = 15;        // that are few enough for a proof in seconds
-constexpr double kept_clear = 0.01;   // metres: the claim
+constexpr int most_discs = 15;  // that are few enough for a proof in seconds
+constexpr double kept_clear = 0.01;  // metres: the claim
 constexpr double seen_within = 0.02;  // metres: a disc's edge may be seen so far off
-constexpr double cell = 0.04;         // metres
+constexpr double cell = 0.04;  // metres
 
 template <typename Policy>
 Reviewed look_at(char const* name, Policy const& policy, Scene const& scene, std::uint64_t seed) {
@@ -107,8 +107,7 @@ Reviewed look_at(char const* name, Policy const& policy, Scene const& scene, std
   lab::ArrivalOptions arrival_options;
   arrival_options.finest = cell;
   arrival_options.threads = threads;
-  result.arrivals =
-      lab::arrival_map<most_discs>(policy, scene.world, scene.trip.goal, scene.region, arrival_options);
+  result.arrivals = lab::arrival_map<most_discs>(policy, scene.world, scene.trip.goal, scene.region, arrival_options);
   return result;
 }
 
@@ -178,11 +177,12 @@ int review(std::string const& out, std::string const& map, std::uint64_t seed) {
                          : lab::picture(title, scene.world, scene.trip, {one.drawn}));
     lab::write_whole(place(one.drawn.name, ".csv"), lab::trace(one.drawn.run));
   }
-  std::printf("\nPictures and tables are in %s/.\n"
-              "Runs are simulations: evidence, not proof; proofs hold for what they assume; neither is a safety function.\n"
-              "A machine that can hurt someone needs protective devices and people qualified for them; local codes come\n"
-              "first.\n",
-              out.c_str());
+  std::printf(
+      "\nPictures and tables are in %s/.\n"
+      "Runs are simulations: evidence, not proof; proofs hold for what they assume; neither is a safety function.\n"
+      "A machine that can hurt someone needs protective devices and people qualified for them; local codes come\n"
+      "first.\n",
+      out.c_str());
   return 0;
 }
 

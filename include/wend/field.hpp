@@ -77,17 +77,18 @@ using memory_t = typename detail::MemoryOf<F, S>::type;
 /// `Course<S> operator()(Percept<S, N> const&) const`, or, when it remembers, a member template `Memory<S>` and
 /// `Course<S> operator()(Percept<S, N> const&, Memory<S>&) const`.
 template <typename F, typename S = float>
-concept HeadingField =
-    Number<S> && std::copy_constructible<F> && (detail::RemembersOn<F, S> || detail::ForgetsOn<F, S>) &&
-    std::same_as<typename detail::Answer<F, S, detail::RemembersOn<F, S>>::type, Course<S>>;
+concept HeadingField = Number<S> && std::copy_constructible<F> &&
+                       (detail::RemembersOn<F, S> || detail::ForgetsOn<F, S>) &&
+                       std::same_as<typename detail::Answer<F, S, detail::RemembersOn<F, S>>::type, Course<S>>;
 
 namespace detail {
 
 // One sentence for each way in which a would-be field can miss the mark; the first that applies is the one shown.
 template <typename F, typename S>
 consteval void check_field() {
-  static_assert(!requires(F & f, Percept<S, 1> const& p) { f(p); } || ForgetsOn<F, S> || RemembersOn<F, S>,
-                "wend: this heading field forgets const; write: auto operator()(auto const& percept) const");
+  static_assert(
+      !requires(F& f, Percept<S, 1> const& p) { f(p); } || ForgetsOn<F, S> || RemembersOn<F, S>,
+      "wend: this heading field forgets const; write: auto operator()(auto const& percept) const");
   static_assert(ForgetsOn<F, S> || RemembersOn<F, S>,
                 "wend: this is not a heading field: it cannot be called as field(percept), nor as field(percept, "
                 "memory) with a member template Memory<S>; write: template <wend::Number S, int N> wend::Course<S> "

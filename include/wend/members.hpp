@@ -39,8 +39,7 @@ constexpr void for_each_member(T& a, U& b, F&& f) noexcept {
   constexpr int count = detail::member_count<std::remove_const_t<T>>();
   static_assert(count == detail::member_count<std::remove_const_t<U>>(),
                 "wend: two structs that differ in their members");
-  static_assert(count <= 8,
-                "wend: a memory may have up to eight members; group some of them in a struct of their own");
+  static_assert(count <= 8, "wend: a memory may have up to eight members; group some of them in a struct of their own");
   if constexpr (std::is_empty_v<T> || count == 0) {
     return;
   } else if constexpr (count == 1) {

@@ -47,7 +47,9 @@ namespace detail {
 using std::sqrt;  // visible to the concept below; a guest brings its own by argument-dependent lookup
 
 template <typename S>
-concept HasRoot = requires(S const& a) { { sqrt(a) } -> std::convertible_to<S>; };
+concept HasRoot = requires(S const& a) {
+  { sqrt(a) } -> std::convertible_to<S>;
+};
 
 template <typename S>
 [[nodiscard]] constexpr S root(S const& x) noexcept {
@@ -62,13 +64,13 @@ concept Number = std::copyable<S> && std::default_initializable<S> && std::const
                  detail::HasRoot<S> && requires(S const& a, S const& b, mask_t<S> const& m) {
                    { a + b } -> std::convertible_to<S>;
                    { a - b } -> std::convertible_to<S>;
-                   { a * b } -> std::convertible_to<S>;
+                   { a* b } -> std::convertible_to<S>;
                    { a / b } -> std::convertible_to<S>;
                    { -a } -> std::convertible_to<S>;
                    { a > b } -> std::same_as<mask_t<S>>;
                    { a <= b } -> std::same_as<mask_t<S>>;
                    { a >= b } -> std::same_as<mask_t<S>>;
-                   { m && m } -> std::convertible_to<mask_t<S>>;
+                   { m&& m } -> std::convertible_to<mask_t<S>>;
                    { m || m } -> std::convertible_to<mask_t<S>>;
                    { !m } -> std::convertible_to<mask_t<S>>;
                    { select(m, a, b) } -> std::convertible_to<S>;

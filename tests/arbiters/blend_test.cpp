@@ -136,8 +136,8 @@ TEST_CASE_TEMPLATE("three shares are the weighted mean of three vectors, whateve
       double const goal = 0.3 * i;
       double const nose = 2.0 - 0.13 * i;
       std::complex<double> const mean = (1.0 * unit(goal) + 2.0 * 0.75 * unit(nose) - 0.5) / 3.5;
-      for (auto const& course : {scenes::answer(policy, scene_with<S>(goal, nose)),
-                                 scenes::answer(reordered, scene_with<S>(goal, nose))}) {
+      for (auto const& course :
+           {scenes::answer(policy, scene_with<S>(goal, nose)), scenes::answer(reordered, scene_with<S>(goal, nose))}) {
         CHECK(std::abs(confidence_of(course) - std::abs(mean)) < 5.0e-7);
         CHECK(std::abs(direction_of(course) * std::abs(mean) - mean) < 1.0e-6);
       }

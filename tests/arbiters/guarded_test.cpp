@@ -46,8 +46,17 @@ TEST_CASE_TEMPLATE("guarded asks the inner field from enter to leave, and the ou
     float clearance;
     bool inside;
   };
-  for (Step const& step : {Step{0.8F, false}, {0.4F, false}, {0.31F, false}, {0.29F, true}, {0.4F, true}, {0.49F, true},
-                           {0.51F, false}, {0.31F, false}, {0.2F, true}, {-0.1F, true}, {0.6F, false}}) {
+  for (Step const& step : {Step{0.8F, false},
+                           {0.4F, false},
+                           {0.31F, false},
+                           {0.29F, true},
+                           {0.4F, true},
+                           {0.49F, true},
+                           {0.51F, false},
+                           {0.31F, false},
+                           {0.2F, true},
+                           {-0.1F, true},
+                           {0.6F, false}}) {
     scenes::Scene<S> scene = at<S>(S(step.clearance));
     scene.goal = {S(-2.0F), S(2.0F)};
     wend::Course<S> const course = scenes::answer(policy, scene, memory);

@@ -57,8 +57,7 @@ TEST_CASE("past_disc is the direction to the nearest disc plus or minus pi/2, wh
     double const to_goal = std::atan2(goal.y(), goal.x());
     double const left = wend::wrap(to_disc + std::numbers::pi / 2.0);
     double const right = wend::wrap(to_disc - std::numbers::pi / 2.0);
-    double const expected =
-        std::abs(wend::turn(left, to_goal)) < std::abs(wend::turn(right, to_goal)) ? left : right;
+    double const expected = std::abs(wend::turn(left, to_goal)) < std::abs(wend::turn(right, to_goal)) ? left : right;
     double const got = std::atan2(course.direction.y(), course.direction.x());
     CHECK(std::abs(wend::turn(expected, got)) < 1.0e-14);
     CHECK(course.confidence == 1.0);

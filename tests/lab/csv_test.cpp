@@ -125,10 +125,10 @@ TEST_CASE("what is no finite number is refused, at its first character") {
     char const* cell;
     char const* found;
   };
-  for (Bad const bad : {Bad{"oak", "oak"}, Bad{"nan", "nan"}, Bad{"inf", "inf"}, Bad{"-inf", "-inf"},
-                        Bad{"1e999", "1e999"}, Bad{"0x1p3", "0x1p3"}, Bad{"1.5m", "1.5m"}, Bad{"1 2", "1 2"},
-                        Bad{"1.2.3", "1.2.3"}, Bad{"--1", "--1"}, Bad{"\"1\"", "\"1\""}, Bad{"1;2", "1;2"},
-                        Bad{"", ""}, Bad{"-", "-"}, Bad{".", "."}, Bad{"e5", "e5"}}) {
+  for (Bad const bad :
+       {Bad{"oak", "oak"}, Bad{"nan", "nan"}, Bad{"inf", "inf"}, Bad{"-inf", "-inf"}, Bad{"1e999", "1e999"},
+        Bad{"0x1p3", "0x1p3"}, Bad{"1.5m", "1.5m"}, Bad{"1 2", "1 2"}, Bad{"1.2.3", "1.2.3"}, Bad{"--1", "--1"},
+        Bad{"\"1\"", "\"1\""}, Bad{"1;2", "1;2"}, Bad{"", ""}, Bad{"-", "-"}, Bad{".", "."}, Bad{"e5", "e5"}}) {
     INFO(std::string(bad.cell));
     CHECK(error_in(std::string("x,y\n10,20\n30,") + bad.cell + "\n") ==
           std::string("stems.csv:3:4: expected a number for y, found '") + bad.found + "'");

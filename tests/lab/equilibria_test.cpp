@@ -1,5 +1,5 @@
-// Equilibria against what can be worked out by hand, and against Poincare and Hopf's theorem (Guillemin and Pollack 1974,
-// Differential Topology, chapter 3.5): the indices add up to the turns of the course along the boundary.
+// Equilibria against what can be worked out by hand, and against Poincare and Hopf's theorem (Guillemin and Pollack
+// 1974, Differential Topology, chapter 3.5): the indices add up to the turns of the course along the boundary.
 #include <algorithm>
 #include <cmath>
 #include <complex>

@@ -89,7 +89,7 @@ TEST_CASE_TEMPLATE("comparisons and masks answer in each lane as bools do", P, P
   CHECK(count_wrong<P>([](Row<P> const& a, Row<P> const& b) {
           P const x = pack<P>(a);
           P const y = pack<P>(b);
-          Mask const less = x < y, more = x > y, at_most = x <= y, at_least = x >= y, sound = finite(x);
+          Mask const less = x<y, more = x> y, at_most = x <= y, at_least = x >= y, sound = finite(x);
           Mask const both = less && sound, either = less || sound, neither = !(less || sound);
           Mask const chosen = select(less, sound, at_least);
           P const picked = select(less, x, y);

@@ -234,7 +234,8 @@ TEST_CASE("every disc is on the picture, where it stands and as large as it is")
   auto const circles = picture.all("circle");
   // The two discs come first; their distance gives the scale: hypot(1.5, 1.6) m.
   double const scale = std::hypot(number(circles[0], "cx") - number(circles[1], "cx"),
-                                  number(circles[0], "cy") - number(circles[1], "cy")) / std::hypot(1.5, 1.6);
+                                  number(circles[0], "cy") - number(circles[1], "cy")) /
+                       std::hypot(1.5, 1.6);
   CHECK(number(circles[0], "r") == doctest::Approx(0.3 * scale).epsilon(0.002));
   CHECK(number(circles[1], "r") == doctest::Approx(0.5 * scale).epsilon(0.002));
   CHECK(number(circles[0], "cx") > number(circles[1], "cx"));

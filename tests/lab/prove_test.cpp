@@ -46,8 +46,8 @@ lab::ProofOptions with_error(double radius) {
 // A drive with readings that are off by anything within the error, anew on each tick, and the latency of the plant:
 // each command is taken up late and held for a period. Counts the ticks that began clear and did not stay clear.
 template <typename Loop>
-int broken_ticks(Loop const& loop, lab::Sampling const& sampling, lab::World const& world, double error, double distance,
-                 int drives, int ticks) {
+int broken_ticks(Loop const& loop, lab::Sampling const& sampling, lab::World const& world, double error,
+                 double distance, int drives, int ticks) {
   int broken = 0;
   auto const radius = static_cast<double>(loop.robot_radius);
   for (std::uint32_t drive = 0; drive < static_cast<std::uint32_t>(drives); ++drive) {
@@ -98,8 +98,8 @@ wend::Loop<Policy> loop_of(Policy const& policy) {
 TEST_CASE("a loop whose margin is larger than the reading error is proved to keep clear, whatever its policy") {
   auto const check = [](auto const& policy) {
     auto const loop = loop_of(policy);
-    auto const proof = lab::prove<8>(loop, lab::Sampling{}, three_discs(), goal, region, lab::KeepsClear{0.01},
-                                     with_error(0.02));
+    auto const proof =
+        lab::prove<8>(loop, lab::Sampling{}, three_discs(), goal, region, lab::KeepsClear{0.01}, with_error(0.02));
     CHECK(proof.verdict == lab::Verdict::proved);
     CHECK(proof.left.empty());
     CHECK(proof.left_share == 0.0);
@@ -160,8 +160,7 @@ TEST_CASE("a policy by itself: a blend keeps a striding point clear, the same wi
   lab::Stride const stride{0.03, 0.05};
   auto const away_when_near =
       wend::blend(wend::ramp(wend::clearance, 0.10F, 0.60F), wend::away_from_discs{}, wend::toward_goal{});
-  auto const into_when_near =
-      wend::blend(wend::ramp(wend::clearance, 0.10F, 0.60F), into_discs{}, wend::toward_goal{});
+  auto const into_when_near = wend::blend(wend::ramp(wend::clearance, 0.10F, 0.60F), into_discs{}, wend::toward_goal{});
   auto const prove = [&](auto const& policy) {
     return lab::prove<8>(policy, stride, 0.2F, world, goal, region, lab::KeepsClear{0.02}, with_error(0.02));
   };
@@ -203,8 +202,7 @@ TEST_CASE("a spent budget leaves the rest undecided, and says how much that is")
 TEST_CASE("two threads come to the same verdict after the same boxes") {
   lab::ProofOptions options = with_error(0.02);
   auto const loop = loop_of(policies::composed);
-  auto const alone =
-      lab::prove<8>(loop, lab::Sampling{}, three_discs(), goal, region, lab::KeepsClear{0.01}, options);
+  auto const alone = lab::prove<8>(loop, lab::Sampling{}, three_discs(), goal, region, lab::KeepsClear{0.01}, options);
   options.threads = 2;
   auto const together =
       lab::prove<8>(loop, lab::Sampling{}, three_discs(), goal, region, lab::KeepsClear{0.01}, options);

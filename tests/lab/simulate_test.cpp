@@ -36,9 +36,7 @@ constexpr Loop<toward_goal, Ring<90>> straight{.policy = {}, .sensing = ring};
 
 // One that never brakes for a disc.
 constexpr Loop<toward_goal, Ring<90>> heedless{
-    .policy = {},
-    .sensing = ring,
-    .pace = {.top_speed = 0.6F, .reaction = 1e-3F, .braking = 1e6F, .margin = -100.0F}};
+    .policy = {}, .sensing = ring, .pace = {.top_speed = 0.6F, .reaction = 1e-3F, .braking = 1e6F, .margin = -100.0F}};
 
 Vehicle exact() {
   Vehicle v;
@@ -71,8 +69,8 @@ bool same(Run const& a, Run const& b) {
                   same(s.pose.position.y(), t.pose.position.y()) && same(s.pose.heading.x(), t.pose.heading.x()) &&
                   same(s.pose.heading.y(), t.pose.heading.y()) && same(s.clearance, t.clearance) &&
                   same(s.wheels.left, t.wheels.left) && same(s.wheels.right, t.wheels.right) &&
-                  same(s.body.speed, t.body.speed) && same(s.body.turn_rate, t.body.turn_rate) &&
-                  s.modes == t.modes && s.status == t.status;
+                  same(s.body.speed, t.body.speed) && same(s.body.turn_rate, t.body.turn_rate) && s.modes == t.modes &&
+                  s.status == t.status;
          });
 }
 

@@ -36,7 +36,9 @@ struct Mixture {
   }
 };
 
-Sloped over(Interval const& x, Interval const& y) { return Mixture{}(Vec2<Sloped>{Sloped::position(x, 0), Sloped::position(y, 1)}); }
+Sloped over(Interval const& x, Interval const& y) {
+  return Mixture{}(Vec2<Sloped>{Sloped::position(x, 0), Sloped::position(y, 1)});
+}
 
 }  // namespace
 

@@ -1,5 +1,5 @@
-// Switching surfaces against arcs worked out by hand from the two fields (sliding: Filippov 1988, Differential Equations
-// with Discontinuous Righthand Sides, section 4), and times against plain kinematics.
+// Switching surfaces against arcs worked out by hand from the two fields (sliding: Filippov 1988, Differential
+// Equations with Discontinuous Righthand Sides, section 4), and times against plain kinematics.
 #include <algorithm>
 #include <cmath>
 #include <cstdint>
@@ -127,11 +127,13 @@ TEST_CASE("away turned round makes the same surface escape, and winds across a l
   SwitchingReport const report =
       switching(guarded(above(clearance, 0.4F, 0.4F), away_from_discs{}, toward_goal{}), one_disc(), goal, hall);
   double const apart = (goal - one_disc().discs[0].disc.centre).norm();
-  CHECK(report.share(SurfaceKind::escaping) == doctest::Approx(1.0 - std::acos(radius_at(0.4F) / apart) / pi).epsilon(1e-3));
+  double const expected = 1.0 - std::acos(radius_at(0.4F) / apart) / pi;
+  CHECK(report.share(SurfaceKind::escaping) == doctest::Approx(expected).epsilon(1e-3));
   CHECK(report.share(SurfaceKind::sliding) == 0.0);
   // The line x = 0.5, inside to the left of it. Winds (left, right of it) of (+, -) slide, (-, +) escape, else cross.
   auto const line = [](Parameter left, Parameter right) {
-    return switching(guarded(below(to_the_right{}, 0.5F, 0.5F), wind{left, 1.0F}, wind{right, -0.5F}), World{}, goal, hall);
+    auto const policy = guarded(below(to_the_right{}, 0.5F, 0.5F), wind{left, 1.0F}, wind{right, -0.5F});
+    return switching(policy, World{}, goal, hall);
   };
   CHECK(line(1.0F, -1.0F).share(SurfaceKind::sliding) == 1.0);
   CHECK(line(-1.0F, 1.0F).share(SurfaceKind::escaping) == 1.0);
@@ -173,7 +175,7 @@ TEST_CASE("a signal of one's own is as steep as its steepest place") {
 
 TEST_CASE("a signal that jumps gives no least time, and one that looks at the heading counts the turning") {
   auto const before = guarded(above(disc_before_goal, 0.5F, 0.3F), past_disc{}, toward_goal{});
-  SwitchingReport const jumps = switching(before, three_discs(), goal, hall);  // with the nearest disc it changes at once
+  SwitchingReport const jumps = switching(before, three_discs(), goal, hall);  // where the nearest disc changes
   CHECK(jumps.rate == std::numeric_limits<double>::infinity());
   CHECK(jumps.least_time == 0.0);
   // Off the goal, heading_error changes by no more than turning does, and what the goal's bearing changes by.
@@ -205,11 +207,13 @@ TEST_CASE("a machine that moves as it likes keeps an answer for the time that sw
   int switches = 0;
   for (std::uint32_t i = 0; i < 100'000; ++i) {
     // Back and forth past a disc, a little aslant, at top speed.
-    double const bearing = (i / 70) % 2 == 0 ? draws.between(-0.2, 0.2, {0, i / 70}) : pi + draws.between(-0.2, 0.2, {0, i / 70});
+    std::uint32_t const leg = i / 70;
+    double const bearing = (leg % 2 == 0 ? 0.0 : pi) + draws.between(-0.2, 0.2, {0, leg});
     p += options.top_speed * dt * Vec2<double>{std::cos(bearing), std::sin(bearing)};
     p.y() = 1.5;
     p.x() = std::clamp(p.x(), -0.95, 0.2);
-    bool const now = ask(policy.guard, look(Pose<double>{p, {1.0, 0.0}}, goal, discs, static_cast<double>(0.2F), dt), memory);
+    auto const seen = look(Pose<double>{p, {1.0, 0.0}}, goal, discs, static_cast<double>(0.2F), dt);
+    bool const now = ask(policy.guard, seen, memory);
     since += dt;
     if (now != was) {
       shortest = switches > 1 ? std::min(shortest, since) : shortest;

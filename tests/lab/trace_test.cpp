@@ -19,8 +19,8 @@ using namespace wend;
 lab::Run two_ticks() {
   lab::Run run;
   run.ticks.push_back({0.0, {{1.25, -2.5}, {0.0, -1.0}}, 0.75, {3.5, -4.25}, {0.5, -1.5}, 2, Status::ok});
-  run.ticks.push_back({0.05, {{-1.0, 0.5}, {-1.0, 0.0}}, std::numeric_limits<double>::infinity(), {}, {}, 0,
-                       Status::no_course});
+  run.ticks.push_back(
+      {0.05, {{-1.0, 0.5}, {-1.0, 0.0}}, std::numeric_limits<double>::infinity(), {}, {}, 0, Status::no_course});
   return run;
 }
 
@@ -40,8 +40,8 @@ TEST_CASE("trace of a run without ticks is the names alone") {
 }
 
 TEST_CASE("a traced run reads back as the ticks, to the last decimal") {
-  Loop<toward_goal, Ring<36>> const loop{
-      .policy = {}, .sensing = {even_bearings<36>(0.0, 0.17453292519943295), 0.05F, 6.0F, 0.01F}};
+  Loop<toward_goal, Ring<36>> const loop{.policy = {},
+                                         .sensing = {even_bearings<36>(0.0, 0.17453292519943295), 0.05F, 6.0F, 0.01F}};
   lab::World world;
   world.add(1.5, 0.8, 0.2);
   lab::Run const run = lab::simulate(loop, lab::Vehicle{}, world, {{}, {3.0, 0.0}, 30.0}, 1, 0, true);
@@ -65,9 +65,15 @@ TEST_CASE("a traced run reads back as the ticks, to the last decimal") {
   double worst = 0.0;
   for (std::size_t i = 0; i < run.ticks.size(); ++i) {
     lab::Tick const& t = run.ticks[i];
-    std::vector<double> const expected{t.time, t.pose.position.x(), t.pose.position.y(),
-                                       std::atan2(t.pose.heading.y(), t.pose.heading.x()), t.clearance,
-                                       t.wheels.left, t.wheels.right, t.body.speed, t.body.turn_rate,
+    std::vector<double> const expected{t.time,
+                                       t.pose.position.x(),
+                                       t.pose.position.y(),
+                                       std::atan2(t.pose.heading.y(), t.pose.heading.x()),
+                                       t.clearance,
+                                       t.wheels.left,
+                                       t.wheels.right,
+                                       t.body.speed,
+                                       t.body.turn_rate,
                                        static_cast<double>(t.modes)};
     REQUIRE(table.rows[i].size() == expected.size());
     for (std::size_t k = 0; k < expected.size(); ++k) {

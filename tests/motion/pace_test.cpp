@@ -60,8 +60,8 @@ TEST_CASE_TEMPLATE("the stoppable speed never falls as the room grows", S, float
 
 TEST_CASE_TEMPLATE("without room there is no speed, and with endless room a finite one", S, WEND_TEST_NUMBERS) {
   Pace const pace{};
-  for (float room : {0.0F, -0.0F, -1.0e-6F, -1.0F, -std::numeric_limits<float>::max(), -infinity, not_a_number,
-                     -not_a_number}) {
+  for (float room :
+       {0.0F, -0.0F, -1.0e-6F, -1.0F, -std::numeric_limits<float>::max(), -infinity, not_a_number, -not_a_number}) {
     S const v = pace.stoppable(S(room));
     CAPTURE(room);
     CHECK(numbers::all<S>(v >= S(0.0F) && v <= S(0.0F)));

@@ -34,8 +34,7 @@ double degrees(double d) { return d * std::numbers::pi / 180.0; }
 TEST_CASE_TEMPLATE("steering turns the short way and its sign is counter-clockwise", S, WEND_TEST_NUMBERS) {
   for (int heading = -180; heading < 180; heading += 15) {
     for (int error = -179; error < 180; ++error) {
-      BodyVelocity<S> const body =
-          steering(course_at<S>(degrees(heading + error)), unit<S>(degrees(heading)), S(1.0F));
+      BodyVelocity<S> const body = steering(course_at<S>(degrees(heading + error)), unit<S>(degrees(heading)), S(1.0F));
       double const rate = static_cast<double>(numbers::first(body.turn_rate));
       CAPTURE(heading);
       CAPTURE(error);

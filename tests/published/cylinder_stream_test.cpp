@@ -1,7 +1,7 @@
-// A uniform stream past a cylinder: the circle theorem (Milne-Thomson 1940, Proc. Camb. Phil. Soc. 36:246-247) gives for
-// a stream of speed 1, a circle of radius a and a circulation G the velocity u - i v = 1 - a^2/z^2 - i G/(2 pi z), with
-// stagnation points at z = i G/(4 pi) +- sqrt(a^2 - (G/(4 pi))^2) (Milne-Thomson, Theoretical Hydrodynamics, chapter 7;
-// from memory).
+// A uniform stream past a cylinder: the circle theorem (Milne-Thomson 1940, Proc. Camb. Phil. Soc. 36:246-247) gives
+// for a stream of speed 1, a circle of radius a and a circulation G the velocity u - i v = 1 - a^2/z^2 - i G/(2 pi z),
+// with stagnation points at z = i G/(4 pi) +- sqrt(a^2 - (G/(4 pi))^2) (Milne-Thomson, Theoretical Hydrodynamics,
+// chapter 7; from memory).
 #include <cmath>
 #include <complex>
 #include <numbers>

@@ -25,8 +25,8 @@ scenes::Scene<double> goal_before_a_disc(double clearance_on_goal) {
 
 double potential(scenes::Scene<double> const& scene) {
   wend::Vec2<double> const x = scene.pose.position;
-  double const rho =
-      std::hypot(x.x() - scene.discs[0].centre.x(), x.y() - scene.discs[0].centre.y()) - disc_radius - robot_radius;
+  double const rho = std::hypot(x.x() - scene.discs[0].centre.x(), x.y() - scene.discs[0].centre.y()) - disc_radius -
+                     robot_radius;
   double const excess = rho <= 0.75 ? 1.0 / rho - 1.0 / 0.75 : 0.0;
   return 0.5 * (x.x() * x.x() + x.y() * x.y()) + 0.0625 / 2.0 * excess * excess;
 }

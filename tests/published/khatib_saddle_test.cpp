@@ -1,5 +1,5 @@
-// The resting place behind a disc in the potential field of Khatib (1986), Int. J. Robotics Research 5(1):90-98, found by
-// equilibria and by hand. The formulas are from memory:
+// The resting place behind a disc in the potential field of Khatib (1986), Int. J. Robotics Research 5(1):90-98, found
+// by equilibria and by hand. The formulas are from memory:
 //   goal:  F = -k (x - g)          FIRAS: F = eta (1/rho - 1/rho0) / rho^2 away from the disc, for rho <= rho0
 #include <cmath>
 

@@ -113,8 +113,7 @@ class Places {
 };
 
 // A goal, a disc and the machine in line: the disc between.
-constexpr Setting in_line{{0.0L, 0.0L},
-                          {{{{2.0L, 0.0L}, 0.5L}, {{1.0e6L, 0.0L}, 0.0L}, {{1.0e6L, 0.0L}, 0.0L}}}};
+constexpr Setting in_line{{0.0L, 0.0L}, {{{{2.0L, 0.0L}, 0.5L}, {{1.0e6L, 0.0L}, 0.0L}, {{1.0e6L, 0.0L}, 0.0L}}}};
 
 // Where, on the far side of the disc, pull and push are equal: bisection on k x = eta (1/rho - 1/rho0) / rho^2.
 Real balance() {
@@ -153,9 +152,8 @@ TEST_CASE("the force is minus the gradient of Khatib's potential") {
   Real const h = 1.0e-6L;
   for (int i = 0; i < 2000; ++i) {
     Point const x = places.next();
-    Point const downhill{
-        -(potential({x[0] + h, x[1]}, setting) - potential({x[0] - h, x[1]}, setting)) / (2.0L * h),
-        -(potential({x[0], x[1] + h}, setting) - potential({x[0], x[1] - h}, setting)) / (2.0L * h)};
+    Point const downhill{-(potential({x[0] + h, x[1]}, setting) - potential({x[0] - h, x[1]}, setting)) / (2.0L * h),
+                         -(potential({x[0], x[1] + h}, setting) - potential({x[0], x[1] - h}, setting)) / (2.0L * h)};
     CHECK(static_cast<double>(distance(wend_force<double>(x, setting), downhill)) <
           1.0e-8 * static_cast<double>(1.0L + length(downhill)));
   }

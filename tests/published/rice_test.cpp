@@ -1,5 +1,5 @@
-// How often noise crosses a level: Rice (1944), Mathematical analysis of random noise, Bell Syst. Tech. J. 23, eq. 3.3-11
-// (from memory), against the noise of his own model (eq. 2.8-6): many cosines of fixed power and random phase,
+// How often noise crosses a level: Rice (1944), Mathematical analysis of random noise, Bell Syst. Tech. J. 23, eq.
+// 3.3-11 (from memory), against the noise of his own model (eq. 2.8-6): many cosines of fixed power and random phase,
 //   n(t) = sum c_k cos(w_k t + phi_k),   c_k^2 / 2 = the power of the band round w_k.
 #include <algorithm>
 #include <array>

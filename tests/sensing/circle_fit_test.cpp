@@ -8,8 +8,8 @@
 #include <random>
 #include <vector>
 
-#include <Eigen/QR>
 #include <doctest/doctest.h>
+#include <Eigen/QR>
 
 #include "wend/sensing/circle_fit.hpp"
 

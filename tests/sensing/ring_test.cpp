@@ -124,8 +124,8 @@ TEST_CASE_TEMPLATE("360 beams find centre and radius of round things within a fe
       double best = infinity;
       double radius_off = infinity;
       for (wend::Disc<S> const& disc : discs) {
-        double const off = std::hypot(static_cast<double>(disc.centre.x()) - round.x,
-                                      static_cast<double>(disc.centre.y()) - round.y);
+        double const off =
+            std::hypot(static_cast<double>(disc.centre.x()) - round.x, static_cast<double>(disc.centre.y()) - round.y);
         radius_off = off < best ? std::abs(static_cast<double>(disc.radius) - round.radius) : radius_off;
         best = std::min(best, off);
       }
@@ -310,8 +310,8 @@ TEST_CASE("more things than fit: the nearest are kept and the others counted") {
 
 TEST_CASE_TEMPLATE("a sensor that is mounted aside and turned shows the same world", S, float, double) {
   // The sensor sits at (0.2, -0.1) and looks 2 rad to the left; the world is given in the robot's frame.
-  constexpr wend::Ring<360> turned{wend::even_bearings<360>(0.0, 2.0 * pi / 360.0), 0.05F, 6.0F, 0.01F,
-                                   {0.2F, -0.1F, wend::bearing(2.0)}};
+  constexpr wend::Ring<360> turned{
+      wend::even_bearings<360>(0.0, 2.0 * pi / 360.0), 0.05F, 6.0F, 0.01F, {0.2F, -0.1F, wend::bearing(2.0)}};
   Round const round{1.3, 0.7, 0.35};
   auto const ranges = row<S, 360>([&](double angle) { return cast(round, 0.2, -0.1, angle); }, 2.0);
   wend::DiscSet<S, 64> const discs = see<S>(turned, ranges);

@@ -13,10 +13,9 @@ using wend::Status;
 namespace {
 
 // In the order of precedence that the header promises, most urgent first.
-constexpr bool Findings<float>::*in_order[] = {&Findings<float>::stale,     &Findings<float>::blind,
-                                               &Findings<float>::arrived,   &Findings<float>::no_course,
-                                               &Findings<float>::blocked,   &Findings<float>::stuck,
-                                               &Findings<float>::discs_dropped};
+constexpr bool Findings<float>::* in_order[] = {
+    &Findings<float>::stale,   &Findings<float>::blind, &Findings<float>::arrived,      &Findings<float>::no_course,
+    &Findings<float>::blocked, &Findings<float>::stuck, &Findings<float>::discs_dropped};
 constexpr Status statuses[] = {Status::stale,   Status::blind, Status::arrived,      Status::no_course,
                                Status::blocked, Status::stuck, Status::discs_dropped};
 

@@ -87,7 +87,7 @@ template <typename Field>
 /// second where it is 1.
 template <typename Signal, typename Low, typename High>
 [[nodiscard]] constexpr blended_field<ramp_weight<Signal>, Low, High> blend(ramp_weight<Signal> weight, Low low,
-                                                                             High high) noexcept {
+                                                                            High high) noexcept {
   detail::check_field<Low, float>();
   detail::check_field<High, float>();
   return {weight, low, high};

@@ -10,7 +10,9 @@ namespace wend::inline v0 {
 namespace detail {
 
 template <typename F>
-concept SomeSignal = requires(F const& f, Percept<float, 1> const& p) { { f(p) } -> std::same_as<float>; };
+concept SomeSignal = requires(F const& f, Percept<float, 1> const& p) {
+  { f(p) } -> std::same_as<float>;
+};
 
 template <typename F>
 concept SomeGuard = requires(F const& f, Percept<float, 1> const& p, memory_t<F, float>& m) {

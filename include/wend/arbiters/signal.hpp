@@ -45,8 +45,8 @@ inline constexpr signals::clearance clearance{};
 /// Metres from the robot's centre to the goal.
 inline constexpr signals::goal_distance goal_distance{};
 
-/// How far the nose is off the goal's direction, as the chord 2 sin(|angle| / 2), in [0, 2]: within 1 % of the angle in
-/// radians up to 0.5. Give thresholds as chord(angle). 1 on the goal, where there is no direction.
+/// How far the nose is off the goal's direction, as the chord of the angle on the unit circle, in [0, 2]: within 1 % of
+/// the angle in radians up to 0.5. Give thresholds as chord(angle). 1 on the goal, where there is no direction.
 inline constexpr signals::heading_error heading_error{};
 
 /// Cosine of the angle between the directions to the nearest disc and to the goal: 1 when the disc stands straight

@@ -1,4 +1,4 @@
-// wend/lab/advise.hpp - thresholds for a guard: how wide a hysteresis the noise asks for, and how much room braking asks for.
+// wend/lab/advise.hpp - thresholds for a guard: as early as braking asks for, as far apart as the noise asks for.
 #pragma once
 
 #include <array>
@@ -15,7 +15,7 @@ namespace wend::inline v0::lab {
 /// Q(z): the probability that a standard normal number is over z.
 [[nodiscard]] inline double normal_tail(double z) { return 0.5 * std::erfc(z / std::numbers::sqrt2); }
 
-/// The z with Q(z) = p, for p in (0, 0.5]; 0 for larger p. By bisection; 39, beyond which Q is 0 in double, for smaller p.
+/// The z with Q(z) = p, for p in (0, 0.5]; 0 for larger p. By bisection in [0, 39]; beyond, Q is 0 in double.
 [[nodiscard]] inline double normal_tail_inverse(double p) {
   double low = 0.0;
   double high = 39.0;
@@ -31,10 +31,11 @@ struct IndependentReadings {
   double sigma = 0.02;         ///< standard deviation, in the signal's unit
   double per_second = 20.0;    ///< readings, and answers of the guard
 
-  /// Switches a second, both ways counted, of a guard with a hysteresis of `width` while the true signal stands still in
-  /// the middle, which is where it switches most. Each reading then crosses the threshold that matters with
-  /// p = Q(width / (2 sigma)), whatever came before, so the guard is a Markov chain that changes with p at each reading.
-  /// Anywhere else it is 2 / (1/Q(a / sigma) + 1/Q(b / sigma)) readings' worth, a + b = width, and less, 1/Q being convex.
+  /// Switches a second, both ways counted, of a guard with a hysteresis of `width` while the true signal stands still
+  /// in the middle, which is where it switches most. Each reading then crosses the threshold that matters with p =
+  /// Q(width / (2 sigma)), whatever came before, so the guard is a Markov chain that changes with p at each reading.
+  /// Anywhere else it is 2 / (1/Q(a / sigma) + 1/Q(b / sigma)) readings' worth, a + b = width, and less, 1/Q being
+  /// convex.
   [[nodiscard]] double switches_per_second(double width) const {
     return per_second * normal_tail(width / (2.0 * sigma));
   }
@@ -61,8 +62,8 @@ struct BandLimitedNoise {
   }
   /// Switches a second, both ways counted, of a guard with a hysteresis of `width`, wherever the true signal stands
   /// still: no more than this. Each switch one way takes a crossing of its threshold, the farther of which is at least
-  /// width / 2 away, and each switch is followed by one the other way. Exact without hysteresis; of a wide one about half,
-  /// since a second crossing of the same threshold finds the guard switched already.
+  /// width / 2 away, and each switch is followed by one the other way. Exact without hysteresis; of a wide one about
+  /// half, since a second crossing of the same threshold finds the guard switched already.
   [[nodiscard]] double switches_per_second(double width) const { return 2.0 * upcrossings_per_second(0.5 * width); }
   /// The width for which that bound is one in `seconds`; 0 if even no hysteresis switches less often.
   [[nodiscard]] double width_for(double seconds) const {
@@ -91,9 +92,9 @@ struct Advice {
 }
 
 /// Thresholds for a guard on the clearance. It is entered where the machine can just stop from top speed, earlier by
-/// `surety` standard deviations, so that of the readings taken there only Q(surety) come too late. The hysteresis is as wide
-/// as the noise needs for a mean time of `seconds` between false switches: noise is IndependentReadings or BandLimitedNoise,
-/// in metres. An advice about nuisance, not a safety function.
+/// `surety` standard deviations, so that of the readings taken there only Q(surety) come too late. The hysteresis is as
+/// wide as the noise needs for a mean time of `seconds` between false switches: noise is IndependentReadings or
+/// BandLimitedNoise, in metres. An advice about nuisance, not a safety function.
 template <typename Noise>
 [[nodiscard]] Advice advise(Noise const& noise, double seconds, Pace const& pace = {}, double surety = 3.0) {
   Advice a;
@@ -107,8 +108,8 @@ template <typename Noise>
   std::snprintf(text.data(), text.size(),
                 "below(clearance, %.3fF, %.3fF)\n"
                 "From %.2f m/s the machine needs %.3f m to stop: %.3f m in %.2f s of reaction, %.3f m of braking at "
-                "%.2f m/s2, %.3f m of overrun and a margin of %.3f m. Readings of standard deviation %.3f m are too long by "
-                "more than %.3f m once in %.0f, so the guard is entered that much earlier.\n"
+                "%.2f m/s2, %.3f m of overrun and a margin of %.3f m. Readings of standard deviation %.3f m are too "
+                "long by more than %.3f m once in %.0f, so the guard is entered that much earlier.\n"
                 "With a hysteresis of %.3f m, noise alone switches it once in %.3g s on average, or less often.\n"
                 "This is no safety function: it holds for Gaussian noise of the kind given and a clearance that stands "
                 "still, and says nothing about readings that fail.\n",
@@ -117,8 +118,8 @@ template <typename Noise>
                 static_cast<double>(pace.reaction),
                 static_cast<double>(pace.top_speed) * static_cast<double>(pace.top_speed) /
                     (2.0 * static_cast<double>(pace.braking)),
-                static_cast<double>(pace.braking), pace.overrun<double>(), static_cast<double>(pace.margin), noise.sigma,
-                a.allowance, 1.0 / normal_tail(surety), a.width, a.between_switches);
+                static_cast<double>(pace.braking), pace.overrun<double>(), static_cast<double>(pace.margin),
+                noise.sigma, a.allowance, 1.0 / normal_tail(surety), a.width, a.between_switches);
   a.text = text.data();
   return a;
 }

@@ -13,8 +13,8 @@ namespace wend::inline v0::lab {
 /// sin(x) / x, and 1 at 0.
 [[nodiscard]] inline double sinc(double x) { return std::abs(x) < 1e-8 ? 1.0 : std::sin(x) / x; }
 
-/// Where a body is after `time` seconds at constant velocity: the chord of the arc lies at half the angle turned, and is
-/// speed * time * sinc(half the angle) long, straight motion included.
+/// Where a body is after `time` seconds at constant velocity: the chord of the arc lies at half the angle turned, and
+/// is speed * time * sinc(half the angle) long, straight motion included.
 [[nodiscard]] inline Pose<double> along_arc(Pose<double> const& from, BodyVelocity<double> const& velocity,
                                             double time) {
   double const half = 0.5 * velocity.turn_rate * time;

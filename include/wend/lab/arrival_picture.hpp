@@ -126,8 +126,7 @@ inline Stroke const& stroke_on_map(std::size_t i) { return strokes[(i + 3) % str
   swatch(1, hatched, "undecided, " + fixed(rest) + " %" + (turns ? "; drawn where for some heading" : ""));
   swatch(2, "#5b5a57", "blocked: the machine would touch a disc");
   for (std::size_t i = 0; i < runs.size(); ++i) {
-    svg += detail::svg_run_legend(sheet, 3 + i, runs[i], detail::stroke_on_map(i),
-                                  !world.discs.empty());
+    svg += detail::svg_run_legend(sheet, 3 + i, runs[i], detail::stroke_on_map(i), !world.discs.empty());
   }
   double const metres = (grid.high().x() - grid.low().x()) / grid.count().x;
   svg += detail::svg_note(sheet, 3 + runs.size(),

@@ -117,8 +117,7 @@ template <typename MayBeEmpty>
     if (table.names.empty()) {
       for (auto const& cell : cells) {
         if (cell.text.empty() || detail::is_number(cell.text, value)) {
-          throw FileError(file, number, cell.column,
-                          "expected a column name, found '" + std::string(cell.text) + "'");
+          throw FileError(file, number, cell.column, "expected a column name, found '" + std::string(cell.text) + "'");
         }
         if (std::find(table.names.begin(), table.names.end(), cell.text) != table.names.end()) {
           throw FileError(file, number, cell.column,
@@ -130,9 +129,9 @@ template <typename MayBeEmpty>
       continue;
     }
     if (cells.size() != table.names.size()) {
-      throw FileError(file, number, cells[std::min(table.names.size(), cells.size() - 1)].column,
-                      "expected " + std::to_string(table.names.size()) + " cells, found " +
-                          std::to_string(cells.size()));
+      throw FileError(
+          file, number, cells[std::min(table.names.size(), cells.size() - 1)].column,
+          "expected " + std::to_string(table.names.size()) + " cells, found " + std::to_string(cells.size()));
     }
     table.lines.push_back(number);
     std::vector<double>& row = table.rows.emplace_back();
@@ -180,8 +179,8 @@ inline void write_whole(std::string const& file, std::string_view content) {
     out.close();
     if (!out) {
       std::remove(beside.c_str());
-      throw FileError(file, "expected a place that can be written, with room for " + std::to_string(content.size()) +
-                                " bytes");
+      throw FileError(
+          file, "expected a place that can be written, with room for " + std::to_string(content.size()) + " bytes");
     }
   }
   if (std::rename(beside.c_str(), file.c_str()) != 0) {

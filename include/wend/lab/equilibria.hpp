@@ -64,7 +64,7 @@ struct Unresolved {
 struct Equilibria {
   std::vector<Equilibrium> points;     ///< by x, then y
   std::vector<Unresolved> unresolved;
-  std::optional<int> boundary_index;   ///< the sum of all indices as the boundary says; none when the course vanishes on it
+  std::optional<int> boundary_index;   ///< sum of all indices by the boundary; none if the course vanishes on it
   int found_index = 0;                 ///< the sum over `points` and the unresolved whose index is known
   bool index_agrees = false;           ///< both sums are known and equal
   std::int64_t boxes = 0;              ///< looked at
@@ -169,16 +169,18 @@ template <typename Policy, int Capacity>
 /// What is left is split down to `finest`, gathered in clusters, and Newton's method looks for the point in each. The
 /// index of a point is the sign of the determinant of the derivative. Whatever stays in doubt is in `unresolved`.
 ///
-/// The sum of all indices is known beforehand: the number of turns of the course along the region's boundary, less those
-/// round what was cut out (Poincare and Hopf; Guillemin and Pollack 1974, chapter 3.5). It is counted by intervals and
-/// without regard to what was found, so a place that was missed shows. Two that cancel, as a saddle and a sink, would not.
+/// The sum of all indices is known beforehand: the number of turns of the course along the region's boundary, less
+/// those round what was cut out (Poincare and Hopf; Guillemin and Pollack 1974, chapter 3.5). It is counted by
+/// intervals and without regard to what was found, so a place that was missed shows. Two that cancel, as a saddle and a
+/// sink, would not.
 ///
-/// The goal is a place of rest where the course is not even continuous: it has length one all round. If the course on the
-/// circle of `goal_radius` round it, in the region and clear of all discs, points inward everywhere (proved by intervals),
-/// the inside of that circle counts as one sink of index 1 and is not looked into. Otherwise the goal is a place like others.
+/// The goal is a place of rest where the course is not even continuous: it has length one all round. If the course on
+/// the circle of `goal_radius` round it, in the region and clear of all discs, points inward everywhere (proved by
+/// intervals), the inside of that circle counts as one sink of index 1 and is not looked into. Otherwise the goal is a
+/// place like others.
 ///
-/// Fresh memory everywhere: a guard with hysteresis counts as not yet entered, between its thresholds as outside. Throws
-/// std::invalid_argument for discs that move or are more than Capacity.
+/// Fresh memory everywhere: a guard with hysteresis counts as not yet entered, between its thresholds as outside.
+/// Throws std::invalid_argument for discs that move or are more than Capacity.
 template <int Capacity = 32, typename Policy>
 [[nodiscard]] Equilibria equilibria(Policy const& policy, World const& world, Vec2<double> const& goal,
                                     Region const& region, EquilibriaOptions const& options = {}) {

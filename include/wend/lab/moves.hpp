@@ -104,7 +104,8 @@ class LoopMoves {
   [[nodiscard]] Move move(StateBox<Loop> const& box) const {
     auto memory = box.memory;
     Situation<F> const now{{as_float(Vec2<Interval>{box.x, box.y}), as_float(headings_over(box.heading))},
-                           as_float(exactly(goal_)), F(static_cast<Parameter>(sampling_.period))};
+                           as_float(exactly(goal_)),
+                           F(static_cast<Parameter>(sampling_.period))};
     Command<F> const command = loop_.tick(now, discs_, memory);
     // The chord of an arc lies between the headings at its ends, and is no longer than the arc. Until the command bites
     // the machine may turn, and drift.
@@ -125,7 +126,7 @@ class LoopMoves {
     double const error = error_.radius + std::numbers::sqrt2 * error_.centre;
     double const kept = static_cast<double>(loop_.pace.margin) + loop_.pace.template overrun<double>();
     double speed = top_speed_;
-    for (int i = 0; i < 50; ++i) {
+    for (int i = 0; i < 8; ++i) {  // each is a bound; more of them hardly tighten it
       Interval const room(clearance + error + speed * since - kept + 1e-6);  // 1e-6 m: more than float can round away
       double const allowed = loop_.pace.stoppable(F(room)).high();
       if (allowed >= speed) {
@@ -144,7 +145,8 @@ class LoopMoves {
   [[nodiscard]] double drive(Pose<double> const& pose, memory_t<Loop, float> memory,
                              std::vector<Disc<double>> const& seen, World const& world) const {
     Vec2<float> const position = pose.position.template cast<float>();
-    Situation<float> const now{{position, pose.heading.template cast<float>()}, goal_.template cast<float>(),
+    Situation<float> const now{{position, pose.heading.template cast<float>()},
+                               goal_.template cast<float>(),
                                static_cast<float>(sampling_.period)};
     BodyVelocity<float> const body = loop_.tick(now, shown_discs<Capacity>(seen, position), memory).body;
     BodyVelocity<double> const exact{static_cast<double>(body.speed), static_cast<double>(body.turn_rate)};

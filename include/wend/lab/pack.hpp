@@ -111,7 +111,15 @@ namespace Eigen {
 /// Lets a Pack be the scalar of an Eigen vector.
 template <int W>
 struct NumTraits<wend::lab::Pack<W>> : GenericNumTraits<wend::lab::Pack<W>> {
-  enum { IsInteger = 0, IsSigned = 1, IsComplex = 0, RequireInitialization = 1, ReadCost = 1, AddCost = 1, MulCost = 1 };
+  enum {
+    IsInteger = 0,
+    IsSigned = 1,
+    IsComplex = 0,
+    RequireInitialization = 1,
+    ReadCost = 1,
+    AddCost = 1,
+    MulCost = 1
+  };
 };
 
 }  // namespace Eigen

@@ -144,7 +144,15 @@ namespace Eigen {
 /// Lets an interval on a path be the scalar of an Eigen vector.
 template <>
 struct NumTraits<wend::lab::PathInterval> : GenericNumTraits<wend::lab::PathInterval> {
-  enum { IsInteger = 0, IsSigned = 1, IsComplex = 0, RequireInitialization = 1, ReadCost = 2, AddCost = 4, MulCost = 8 };
+  enum {
+    IsInteger = 0,
+    IsSigned = 1,
+    IsComplex = 0,
+    RequireInitialization = 1,
+    ReadCost = 2,
+    AddCost = 4,
+    MulCost = 8
+  };
 };
 
 }  // namespace Eigen

@@ -36,8 +36,8 @@ enum class Verdict : std::uint8_t { proved, refuted, undecided };
   return verdict == Verdict::proved ? "proved" : verdict == Verdict::refuted ? "refuted" : "undecided";
 }
 
-/// One state, and one row of discs as they may be seen from there, that break a claim. The machine stands still when the
-/// readings are taken.
+/// One state, and one row of discs as they may be seen from there, that break a claim. The machine stands still when
+/// the readings are taken.
 template <typename Decider>
 struct Counterexample {
   Pose<double> pose;
@@ -88,7 +88,8 @@ class ClearTick {
     return small && !decide_first_mask<FloatInterval>(undecided, true) ? Finding::too_small : Finding::open;
   }
 
-  // Tries states just outside the claimed distance, all round every disc: where a claim that does not hold breaks first.
+  // Tries states just outside the claimed distance, all round every disc: where a claim that does not hold breaks
+  // first.
   bool try_to_break_near_discs(Box const& all) {
     Draws const draws(1, 0);
     auto const angle = [&draws](std::uint32_t purpose, std::uint32_t i) {
@@ -237,8 +238,8 @@ template <typename Moves>
 }  // namespace detail
 
 /// Proves, refutes or leaves undecided that a loop keeps clear, over all positions of a region, all headings, all that
-/// the loop could remember and all readings within their error, by branch and bound. The loop computes on intervals that
-/// enclose single precision, so its rounding is part of the statement; the plant is exact: arcs at the commanded
+/// the loop could remember and all readings within their error, by branch and bound. The loop computes on intervals
+/// that enclose single precision, so its rounding is part of the statement; the plant is exact: arcs at the commanded
 /// velocities (see Sampling), with whatever the command before may do until the new one bites.
 ///
 /// The loop is shown all discs of the world, which must stand still and be no more than Capacity: throws
@@ -257,8 +258,8 @@ template <int Capacity = 32, typename Loop>
 /// the policy keeps it clear. `robot_radius` in metres.
 template <int Capacity = 32, typename Policy>
 [[nodiscard]] Proof<Policy> prove(Policy const& policy, Stride const& stride, Parameter robot_radius,
-                                  World const& world, Vec2<double> const& goal, Region const& region,
-                                  KeepsClear claim, ProofOptions const& options = {}) {
+                                  World const& world, Vec2<double> const& goal, Region const& region, KeepsClear claim,
+                                  ProofOptions const& options = {}) {
   expect_still("prove", world, Capacity);
   detail::PointMoves<Policy, Capacity> const moves(policy, stride, robot_radius, world, goal, options.error);
   return detail::prove_moves(moves, world, region, claim, options);

@@ -43,8 +43,8 @@ struct SearchResult {
   std::vector<Box> left;   ///< not decided: too small to split, or beyond the budget
 };
 
-/// Looks at boxes, depth first, until all hold, one fails, or the budget is spent. `decide(box)` gives a Finding and may
-/// be called from several threads at once; `split(box)` gives the two halves.
+/// Looks at boxes, depth first, until all hold, one fails, or the budget is spent. `decide(box)` gives a Finding and
+/// may be called from several threads at once; `split(box)` gives the two halves.
 template <typename Box, typename Decide, typename Split>
 [[nodiscard]] SearchResult<Box> search(std::vector<Box> start, Decide const& decide, Split const& split,
                                        SearchOptions const& options) {
@@ -114,7 +114,8 @@ template <typename Box, typename Decide, typename Split>
     other.join();
   }
   result.failed = failed;
-  result.left.insert(result.left.end(), std::make_move_iterator(waiting.begin()), std::make_move_iterator(waiting.end()));
+  result.left.insert(result.left.end(), std::make_move_iterator(waiting.begin()),
+                     std::make_move_iterator(waiting.end()));
   return result;
 }
 

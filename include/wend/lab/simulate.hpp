@@ -54,9 +54,9 @@ struct Run {
   double path_length = 0.0;      ///< metres
   double straight_length = 0.0;  ///< metres, from start to goal
   double least_clearance = std::numeric_limits<double>::infinity();  ///< metres over the whole path, not only at ticks
-  int switches = 0;              ///< ticks on which a guard changed its mind
+  int switches = 0;  ///< ticks on which a guard changed its mind
   double least_dwell = std::numeric_limits<double>::infinity();  ///< seconds between two switches, at the least
-  std::vector<Tick> ticks;       ///< empty unless asked for
+  std::vector<Tick> ticks;  ///< empty unless asked for
 };
 
 /// What a run's ending is called.
@@ -108,8 +108,8 @@ class Wheels {
   // Whatever the loop believes of its drive, no wheel does more than it can.
   void ask(double time, WheelRates<double> rates) {
     double const limit = static_cast<double>(vehicle_.drive.max_rate);
-    queue_.push_back({time + vehicle_.latency,
-                      {std::clamp(rates.left, -limit, limit), std::clamp(rates.right, -limit, limit)}});
+    queue_.push_back(
+        {time + vehicle_.latency, {std::clamp(rates.left, -limit, limit), std::clamp(rates.right, -limit, limit)}});
   }
 
   // Rates that hold from `time` for a short `step`.
@@ -190,10 +190,13 @@ template <PlainNumber S = float, typename Loop>
     double const clearance = world.gap(pose.position, run.time) - vehicle.radius;
     run.least_clearance = std::min(run.least_clearance, clearance);
     if (keep_ticks) {
-      run.ticks.push_back({run.time, pose, clearance,
+      run.ticks.push_back({run.time,
+                           pose,
+                           clearance,
                            {static_cast<double>(command.wheels.left), static_cast<double>(command.wheels.right)},
                            {static_cast<double>(command.body.speed), static_cast<double>(command.body.turn_rate)},
-                           modes, run.last_status});
+                           modes,
+                           run.last_status});
     }
     if (run.least_clearance <= 0.0) {
       run.ending = Ending::contact;

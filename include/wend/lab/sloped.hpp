@@ -1,4 +1,4 @@
-// wend/lab/sloped.hpp - an interval that knows how steep it is: bounds on a signal, its gradient, and its rate of change.
+// wend/lab/sloped.hpp - an interval that knows how steep it is: bounds on a signal and on its gradient.
 #pragma once
 
 #include <algorithm>
@@ -15,8 +15,8 @@
 
 namespace wend::inline v0::lab {
 
-/// The answer to a comparison of two Sloped, and which two: so that `select(a < b, a, b)` is known as the lesser of both,
-/// which has a kink but does not jump. After && || ! that is forgotten.
+/// The answer to a comparison of two Sloped, and which two: so that `select(a < b, a, b)` is known as the lesser of
+/// both, which has a kink but does not jump. After && || ! that is forgotten.
 struct SlopedMask {
   Trilean truth;
   std::uint64_t lesser = 0;  ///< the one that is less if the answer is yes; 0 when forgotten
@@ -36,8 +36,8 @@ struct SlopedMask {
 
 /// What a number computed from a pose can be over a box of positions, and how fast it changes: an enclosure of its
 /// gradient by position, a bound on the gradient's length, which is often far better than what the components give, and
-/// one on the derivative by the heading, a unit vector. For a number with kinks (a least, a distance) the bounds hold on
-/// both sides of each and so are bounds on differences too. For one that may jump within the box they are infinite.
+/// one on the derivative by the heading, a unit vector. For a number with kinks (a least, a distance) the bounds hold
+/// on both sides of each and so are bounds on differences too. For one that may jump within the box they are infinite.
 class Sloped {
  public:
   Sloped() = default;
@@ -108,8 +108,8 @@ class Sloped {
   [[nodiscard]] friend SlopedMask operator>(Sloped const& a, Sloped const& b) noexcept { return b < a; }
   [[nodiscard]] friend SlopedMask operator>=(Sloped const& a, Sloped const& b) noexcept { return b <= a; }
   [[nodiscard]] friend SlopedMask finite(Sloped const& a) noexcept { return {finite(a.value_)}; }
-  /// Where the answer is open, the choice may jump from one to the other, unless it is the lesser or the greater of the two
-  /// that were compared.
+  /// Where the answer is open, the choice may jump from one to the other, unless it is the lesser or the greater of the
+  /// two that were compared.
   [[nodiscard]] friend Sloped select(SlopedMask const& m, Sloped const& a, Sloped const& b) noexcept {
     if (!m.truth.undecided()) {
       return m.truth.surely() ? a : b;
@@ -172,7 +172,15 @@ namespace Eigen {
 /// Lets a sloped number be the scalar of an Eigen vector.
 template <>
 struct NumTraits<wend::lab::Sloped> : GenericNumTraits<wend::lab::Sloped> {
-  enum { IsInteger = 0, IsSigned = 1, IsComplex = 0, RequireInitialization = 1, ReadCost = 6, AddCost = 12, MulCost = 24 };
+  enum {
+    IsInteger = 0,
+    IsSigned = 1,
+    IsComplex = 0,
+    RequireInitialization = 1,
+    ReadCost = 6,
+    AddCost = 12,
+    MulCost = 24
+  };
 };
 
 }  // namespace Eigen

@@ -50,7 +50,8 @@ class StillWorld {
     return look(Pose<S>{position, heading}, on<S>(goal_), discs, S(robot_radius_), S(tick));
   }
   template <Number S>
-  [[nodiscard]] Percept<S, Capacity> percept(Vec2<S> const& position, DiscSet<S, Capacity> const& discs) const noexcept {
+  [[nodiscard]] Percept<S, Capacity> percept(Vec2<S> const& position,
+                                             DiscSet<S, Capacity> const& discs) const noexcept {
     return percept(position, on<S>(heading_), discs);
   }
 

@@ -54,7 +54,8 @@ struct Stretch {
     // ends that were moved to meet others.
     double const bulge = radius * (half < 1.0 ? 0.5 * half * half : 2.0);
     double const moved = radius > 0.0 ? 4e-9 : 0.0;
-    double const reach = bulge + moved + 1e-14 * (radius + std::abs(p.x()) + std::abs(p.y()) + std::abs(q.x()) + std::abs(q.y()));
+    double const far = radius + p.cwiseAbs().sum() + q.cwiseAbs().sum();
+    double const reach = bulge + moved + 1e-14 * far;
     return {Interval(std::min(p.x(), q.x()) - reach, std::max(p.x(), q.x()) + reach),
             Interval(std::min(p.y(), q.y()) - reach, std::max(p.y(), q.y()) + reach)};
   }

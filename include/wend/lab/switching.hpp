@@ -250,10 +250,10 @@ template <int Capacity, typename Signal, typename Inside, typename Outside>
 /// machine does there that goes where the course points. The kinds are proved: by the signs, over the whole box, of the
 /// signal's gradient times either course. Where both lead into the surface a real machine chatters.
 ///
-/// With different thresholds nothing slides. Whatever the machine does, an answer is kept for
-/// (|leave - enter| - 2 signal_error) / rate seconds, the signal's greatest rate of change being proved over all places of
-/// the region and all headings: its gradient's length times the top speed, and what turning adds. For `clearance` and
-/// `goal_distance` that length is 1. Discs that move are not covered. Fields start with a fresh memory everywhere.
+/// With different thresholds nothing slides. Whatever the machine does, an answer is kept for (|leave - enter| - 2
+/// signal_error) / rate seconds, the signal's greatest rate of change being proved over all places of the region and
+/// all headings: its gradient's length times the top speed, and what turning adds. For `clearance` and `goal_distance`
+/// that length is 1. Discs that move are not covered. Fields start with a fresh memory everywhere.
 ///
 /// Throws std::invalid_argument for discs that move or are more than Capacity.
 template <int Capacity = 32, typename Signal, typename Inside, typename Outside>

@@ -10,8 +10,8 @@
 
 namespace wend::inline v0::lab {
 
-/// The ticks of a run as comma-separated values: seconds, metres, radians; `modes` has one bit for each `guarded` of the
-/// policy, outermost first, 1 inside. Empty clearance: nothing in the world.
+/// The ticks of a run as comma-separated values: seconds, metres, radians; `modes` has one bit for each `guarded` of
+/// the policy, outermost first, 1 inside. Empty clearance: nothing in the world.
 [[nodiscard]] inline std::string trace(Run const& run) {
   std::string csv =
       "time_s,x_m,y_m,heading_rad,clearance_m,left_rad_s,right_rad_s,speed_m_s,turn_rate_rad_s,modes,status\n";
@@ -24,8 +24,8 @@ namespace wend::inline v0::lab {
       std::snprintf(line.data(), line.size(), "%.4f", t.clearance);
       csv += line.data();
     }
-    std::snprintf(line.data(), line.size(), ",%.4f,%.4f,%.4f,%.4f,%u,%s\n", t.wheels.left, t.wheels.right,
-                  t.body.speed, t.body.turn_rate, t.modes, text(t.status));
+    std::snprintf(line.data(), line.size(), ",%.4f,%.4f,%.4f,%.4f,%u,%s\n", t.wheels.left, t.wheels.right, t.body.speed,
+                  t.body.turn_rate, t.modes, text(t.status));
     csv += line.data();
   }
   return csv;

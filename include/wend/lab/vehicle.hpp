@@ -17,7 +17,7 @@ struct Vehicle {
   double range_noise = 0.01;   ///< metres, standard deviation of one range
   double dropout = 0.01;       ///< share of the beams that read 0 at any time
   double position_noise = 0.0;  ///< metres, standard deviation of each coordinate of the pose estimate, anew each tick
-  double heading_noise = 0.0;   ///< radians, standard deviation of the estimated heading, anew each tick
+  double heading_noise = 0.0;  ///< radians, standard deviation of the estimated heading, anew each tick
 };
 
 }  // namespace wend::inline v0::lab

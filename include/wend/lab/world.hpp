@@ -61,8 +61,8 @@ struct Region {
   Vec2<double> high{0.0, 0.0};
 };
 
-/// Throws std::invalid_argument for a world with discs that move, or more of them than `capacity`; `who` is named in the
-/// message. For whatever takes a world as a policy would find it at any time.
+/// Throws std::invalid_argument for a world with discs that move, or more of them than `capacity`; `who` is named in
+/// the message. For whatever takes a world as a policy would find it at any time.
 inline void expect_still(char const* who, World const& world, int capacity) {
   if (world.discs.size() > static_cast<std::size_t>(capacity)) {
     throw std::invalid_argument(std::string("wend: ") + who + ": the world has more discs than Capacity; write " + who +

@@ -13,9 +13,9 @@ namespace wend::inline v0 {
 struct Pace {
   Parameter top_speed = 0.6F;  ///< metres a second
   Parameter reaction = 0.25F;  ///< seconds
-  Parameter braking = 0.8F;    ///< metres a second squared, what the machine surely manages
-  Parameter margin = 0.05F;    ///< metres kept to a disc, on top of the stopping distance
-  Parameter behind = 0.5F;     ///< cosine: a disc is left behind when the nose is within this of straight away from it
+  Parameter braking = 0.8F;  ///< metres a second squared, what the machine surely manages
+  Parameter margin = 0.05F;  ///< metres kept to a disc, on top of the stopping distance
+  Parameter behind = 0.5F;  ///< cosine: a disc is left behind when the nose is within this of straight away from it
 
   /// The speed from which the machine can stop in `room` metres: 2 room / (reaction + sqrt(reaction^2 + 2 room /
   /// braking)), the positive root of the stopping law written so that nothing cancels. Increasing; 0 without room, also

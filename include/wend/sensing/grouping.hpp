@@ -100,7 +100,7 @@ template <PlainNumber S, int Beams, typename Sink>
   Group group = none;
   Group head = none;
   int head_first = -1;  // the echo the head would begin with: none but broken readings lie between it and beam 0
-  int broken = 0;       // broken readings since the last echo, or since beam 0
+  int broken = 0;  // broken readings since the last echo, or since beam 0
   bool fresh = scan.closed();
   auto const end_group = [&]() noexcept {
     if (group.first >= 0 && group.first == head_first) {

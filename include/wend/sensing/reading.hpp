@@ -61,8 +61,7 @@ struct Limits {
 
   // Limits that are not numbers admit no echo. Beyond far_away a square would overflow single precision.
   [[nodiscard]] static constexpr Limits from(Parameter min_range, Parameter max_range, Parameter no_echo) noexcept {
-    return {S(min_range), S(max_range > far_away ? far_away : max_range),
-            std::bit_cast<std::uint32_t>(no_echo)};
+    return {S(min_range), S(max_range > far_away ? far_away : max_range), std::bit_cast<std::uint32_t>(no_echo)};
   }
 
   // A reading in double is compared with the sign for no echo as a Parameter, so that a sign like 65.535 is met.

@@ -22,7 +22,7 @@ namespace wend::inline v0 {
 /// 2 pi / Beams makes a closed ring; a negative one is a ring that turns clockwise.
 template <int Beams>
 [[nodiscard]] consteval std::array<Bearing, static_cast<std::size_t>(Beams)> even_bearings(double first,
-                                                                                          double spacing) noexcept {
+                                                                                           double spacing) noexcept {
   std::array<Bearing, static_cast<std::size_t>(Beams)> directions{};
   for (int i = 0; i < Beams; ++i) {
     directions[static_cast<std::size_t>(i)] = bearing(first + i * spacing);
@@ -50,13 +50,13 @@ struct Ring {
   std::array<Bearing, static_cast<std::size_t>(Beams)> directions;  ///< unit, in the sensor's frame, in order round it
   Parameter min_range;  ///< metres, positive: what is nearer cannot be measured
   Parameter max_range;  ///< metres: what is farther is no echo; at most far_away
-  Parameter noise;      ///< metres: standard deviation of one range
+  Parameter noise;  ///< metres: standard deviation of one range
   Mounting mounting{};
 
   /// The reading this ranger gives when nothing came back, bit for bit: an infinity, 0, -1, 65.535 or a not-a-number.
   Parameter no_echo = std::numeric_limits<Parameter>::infinity();
 
-  Parameter widest_gap = 0.3F;   ///< metres: echoes farther apart are two things, since a machine may pass between
+  Parameter widest_gap = 0.3F;  ///< metres: echoes farther apart are two things, since a machine may pass between
   Parameter widest_disc = 0.4F;  ///< metres: what is longer and no circle is cut into pieces no longer than this
   Parameter largest_circle = 1.0F;  ///< metres, radius: what is rounder than this is taken for a wall
   Parameter kept_clear = 0.25F;  ///< metres round the robot's origin that no disc reaches into unless an echo does

@@ -13,10 +13,10 @@ enum class Status : std::uint8_t {
   ok,             ///< on its way
   arrived,        ///< stopped: within the arrival radius of the goal
   no_course,      ///< stopped: the policy has no opinion (its fields cancel, or none spoke)
-  blind,          ///< stopped: too few beams alive, a disc that cannot be one, or a pose or goal that is not a number
-  stale,          ///< stopped: the readings are too old, or the time step is not one
-  blocked,        ///< may turn, must not drive: no room left to stop in
-  stuck,          ///< drives on, but has come no nearer to the goal for too long
+  blind,  ///< stopped: too few beams alive, a disc that cannot be one, or a pose or goal that is not a number
+  stale,  ///< stopped: the readings are too old, or the time step is not one
+  blocked,  ///< may turn, must not drive: no room left to stop in
+  stuck,  ///< drives on, but has come no nearer to the goal for too long
   discs_dropped,  ///< drives on: more discs than the set can hold; the nearest ones are known
 };
 
