@@ -47,7 +47,7 @@ template <Number S, int Capacity>
     if constexpr (!PlainNumber<S>) {
       assign_where(nearer, away, polar(Vec2<S>(pose.position - disc.centre)));
     }
-    assign_where(nearer, least_gap, here);
+    least_gap = least(here, least_gap);  // on intervals tighter than the hull of both
   }
   Polar<S> const to_goal = polar(Vec2<S>(goal - pose.position));
   if constexpr (PlainNumber<S>) {
