@@ -1,7 +1,7 @@
 // review: drives four policies through one world on the same noise, and prints what became of each; and where the world
 // is small enough, what is proved about each for all states.
 //
-//   review [--out DIR] [--map STEMS.csv] [--seed N]
+//   review [--out DIR] [--map STEMS.csv] [--seed N] [--runs-only]
 //
 // Without a map: the cellar of cellar.hpp. With one: a stand of trees given as x, y, diameter in metres, crossed from
 // west to east. Writes DIR/<policy>.csv and .svg for each policy, and DIR/all.svg.
@@ -36,10 +36,11 @@ namespace {
 using namespace wend;
 
 constexpr char const* usage =
-    "usage: review [--out DIR] [--map STEMS.csv] [--seed N]\n"
+    "usage: review [--out DIR] [--map STEMS.csv] [--seed N] [--runs-only]\n"
     "  --out DIR        where pictures and tables go (default: review-out)\n"
     "  --map STEMS.csv  a stand of trees, columns x,y,diameter in metres (default: the cellar)\n"
-    "  --seed N         chooses the noise (default: 1)\n";
+    "  --seed N         chooses the noise (default: 1)\n"
+    "  --runs-only      leaves out what takes seconds: the statements about all states\n";
 
 struct Scene {
   std::string title;
@@ -88,11 +89,11 @@ constexpr double seen_within = 0.02;  // metres: a disc's edge may be seen so fa
 constexpr double cell = 0.04;  // metres
 
 template <typename Policy>
-Reviewed look_at(char const* name, Policy const& policy, Scene const& scene, std::uint64_t seed) {
+Reviewed look_at(char const* name, Policy const& policy, Scene const& scene, std::uint64_t seed, bool runs_only) {
   Loop<Policy, Ring<180>> const driven{.policy = policy, .sensing = cellar::ring};
   lab::Vehicle const cart = cellar::cart();
   Reviewed result{{name, lab::simulate(driven, cart, scene.world, scene.trip, seed, 0, true)}, {}};
-  if (scene.world.discs.size() > most_discs) {
+  if (runs_only || scene.world.discs.size() > most_discs) {
     return result;
   }
   int const threads = std::max(1, static_cast<int>(std::thread::hardware_concurrency()));
@@ -136,7 +137,7 @@ void print_statements(std::vector<Reviewed> const& all) {
       "course at once, exact discs, any memory, cells of 4 cm. What is not proved is undecided, not false.\n");
 }
 
-int review(std::string const& out, std::string const& map, std::uint64_t seed) {
+int review(std::string const& out, std::string const& map, std::uint64_t seed, bool runs_only) {
   Scene const scene =
       map.empty() ? Scene{"A tray cart crosses the mushroom cellar", cellar::world(), cellar::trip(), cellar::region}
                   : stand(map);
@@ -146,10 +147,10 @@ int review(std::string const& out, std::string const& map, std::uint64_t seed) {
     throw lab::FileError(out, "expected a folder, or a place where one can be made" +
                                   (why ? " (" + why.message() + ")" : std::string()));
   }
-  std::vector<Reviewed> const all{look_at("hard switch", policies::hard_switch, scene, seed),
-                                  look_at("two thresholds", policies::two_thresholds, scene, seed),
-                                  look_at("blend", policies::blended, scene, seed),
-                                  look_at("composed", policies::composed, scene, seed)};
+  std::vector<Reviewed> const all{look_at("hard switch", policies::hard_switch, scene, seed, runs_only),
+                                  look_at("two thresholds", policies::two_thresholds, scene, seed, runs_only),
+                                  look_at("blend", policies::blended, scene, seed, runs_only),
+                                  look_at("composed", policies::composed, scene, seed, runs_only)};
   std::printf("%s: %zu discs, %.1f m as the crow flies, seed %llu\n\n", scene.title.c_str(), scene.world.discs.size(),
               all.front().drawn.run.straight_length, static_cast<unsigned long long>(seed));
   std::printf("%-16s %-20s %7s %7s %10s %12s %12s\n", "policy", "ending", "time", "path", "clearance", "switches",
@@ -192,15 +193,15 @@ int main(int argc, char** argv) {
   std::string out = "review-out";
   std::string map;
   std::uint64_t seed = 1;
-  option const options[] = {{"out", required_argument, nullptr, 'o'},
-                            {"map", required_argument, nullptr, 'm'},
-                            {"seed", required_argument, nullptr, 's'},
-                            {"help", no_argument, nullptr, 'h'},
-                            {nullptr, 0, nullptr, 0}};
+  bool runs_only = false;
+  option const options[] = {{"out", required_argument, nullptr, 'o'},  {"map", required_argument, nullptr, 'm'},
+                            {"seed", required_argument, nullptr, 's'}, {"runs-only", no_argument, nullptr, 'r'},
+                            {"help", no_argument, nullptr, 'h'},       {nullptr, 0, nullptr, 0}};
   for (int given = 0; (given = getopt_long(argc, argv, "", options, nullptr)) != -1;) {
     switch (given) {
       case 'o': out = optarg; break;
       case 'm': map = optarg; break;
+      case 'r': runs_only = true; break;
       case 's': {
         char const* const end = optarg + std::strlen(optarg);
         auto const parsed = std::from_chars(optarg, end, seed);
@@ -219,7 +220,7 @@ int main(int argc, char** argv) {
     return 2;
   }
   try {
-    return review(out, map, seed);
+    return review(out, map, seed, runs_only);
   } catch (std::exception const& error) {
     std::fprintf(stderr, "review: %s\n", error.what());
     return 2;
