@@ -16,8 +16,8 @@ has() {
 # Undefined behaviour, addresses and leaks. Eigen's own asserts are on (no NDEBUG). Warnings do not stop it: g++ sees
 # ghosts in code that it has instrumented. WEND_QUICK leaves out what would take minutes here.
 sanitizers() {
-  WEND_QUICK=1 WEND_BUILD=build/sanitizers sh cmake/test.sh -DCMAKE_BUILD_TYPE=Debug -DWEND_WERROR=OFF \
-    -DCMAKE_CXX_FLAGS='-O1 -fsanitize=address,undefined -fno-sanitize-recover=all -fno-omit-frame-pointer'
+  WEND_QUICK=1 WEND_BUILD=build/sanitizers sh cmake/test.sh -DCMAKE_BUILD_TYPE=Debug -DCMAKE_CXX_FLAGS_DEBUG=-g1 \
+    -DWEND_WERROR=OFF -DWEND_BENCH=OFF -DCMAKE_CXX_FLAGS='-O1 -fsanitize=address,undefined -fno-sanitize-recover=all -fno-omit-frame-pointer'
 }
 
 # What runs on a robot, as firmware compiles it: no exceptions, no RTTI, nothing of Eigen's that prints or allocates.
