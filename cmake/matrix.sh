@@ -13,7 +13,7 @@ has() {
   return 1
 }
 
-# Undefined behaviour, addresses and leaks. Eigen's own asserts are on (no NDEBUG). Warnings do not stop it: g++ sees
+# Undefined behaviour, addresses and leaks, with CXX where that is set. Eigen's own asserts are on (no NDEBUG). Warnings do not stop it: g++ sees
 # ghosts in code that it has instrumented. WEND_QUICK leaves out what would take minutes here.
 sanitizers() {
   WEND_QUICK=1 WEND_BUILD=build/sanitizers sh cmake/test.sh -DCMAKE_BUILD_TYPE=Debug -DCMAKE_CXX_FLAGS_DEBUG=-g1 \
