@@ -10,7 +10,7 @@
 #include "wend/plane.hpp"
 
 /// The typed list: `TEST_CASE_TEMPLATE("a sentence", S, WEND_TEST_NUMBERS) { ... }`.
-#define WEND_TEST_NUMBERS float, double, wend::lab::Pack<4>, wend::lab::Pack<8>
+#define WEND_TEST_NUMBERS float, double, wend::lab::Pack<8>
 
 namespace numbers {
 

@@ -50,27 +50,8 @@ class DiscSet {
 
  public:
   /// Adds one disc. `viewpoint` decides which one is farthest; it is the origin in the robot's own frame.
-  void add(Disc<S> disc, Vec2<S> const& viewpoint = zero2<S>()) noexcept {
-    mask_t<S> const sound = finite(disc.centre.x()) && finite(disc.centre.y()) && finite(disc.radius) &&
-                            disc.radius >= S(0.0F);
-    rejected_ = rejected_ || !sound;
-    disc.centre = select(sound, disc.centre, Disc<S>{}.centre);
-    disc.radius = select(sound, disc.radius, S(0.0F));
-    if (size_ < Capacity) {
-      at(size_) = disc;
-      ++size_;
-      return;
-    }
-    S farthest = gap(disc, viewpoint);
-    for (int i = 0; i < Capacity; ++i) {  // whichever is farther is carried on; the last one carried is dropped
-      S const here = gap(at(i), viewpoint);
-      mask_t<S> const swap = farthest < here;
-      Disc<S> const carried = disc;
-      assign_where(swap, disc, at(i));
-      assign_where(swap, at(i), carried);
-      farthest = select(swap, here, farthest);
-    }
-    ++dropped_;
+  void add(Disc<S> const& disc, Vec2<S> const& viewpoint = zero2<S>()) noexcept {
+    insert(disc, viewpoint, [](int, mask_t<S> const&) noexcept {});
   }
 
   [[nodiscard]] int size() const noexcept { return size_; }
@@ -86,6 +67,38 @@ class DiscSet {
   }
   [[nodiscard]] Disc<S> const* begin() const noexcept { return discs_.data(); }
   [[nodiscard]] Disc<S> const* end() const noexcept { return discs_.data() + size_; }
+
+ protected:
+  // Adds a disc. What somebody keeps beside the discs goes along by `exchange(i, where)`: what belongs to place i and
+  // what is carried change hands where the mask holds.
+  template <typename Exchange>
+  void insert(Disc<S> disc, Vec2<S> const& viewpoint, Exchange const& exchange) noexcept {
+    mask_t<S> const sound = finite(disc.centre.x()) && finite(disc.centre.y()) && finite(disc.radius) &&
+                            disc.radius >= S(0.0F);
+    rejected_ = rejected_ || !sound;
+    disc.centre = select(sound, disc.centre, Disc<S>{}.centre);
+    disc.radius = select(sound, disc.radius, S(0.0F));
+    if (size_ < Capacity) {
+      at(size_) = disc;
+      exchange(size_, !mask_t<S>{});
+      ++size_;
+      return;
+    }
+    S farthest = gap(disc, viewpoint);
+    for (int i = 0; i < Capacity; ++i) {  // whichever is farther is carried on; the last one carried is dropped
+      S const here = gap(at(i), viewpoint);
+      mask_t<S> const swap = farthest < here;
+      Disc<S> const carried = disc;
+      assign_where(swap, disc, at(i));
+      assign_where(swap, at(i), carried);
+      exchange(i, swap);
+      farthest = select(swap, here, farthest);
+    }
+    ++dropped_;
+  }
+
+  // A number among what somebody keeps beside the discs cannot be one.
+  void reject(mask_t<S> const& unsound) noexcept { rejected_ = rejected_ || unsound; }
 
  private:
   [[nodiscard]] Disc<S>& at(int i) noexcept { return discs_[static_cast<std::size_t>(i)]; }

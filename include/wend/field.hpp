@@ -16,19 +16,22 @@ template <Number S>
 struct Course {
   Vec2<S> direction{S(0.0F), S(0.0F)};  ///< unit, or (0, 0) when there is no opinion
   S confidence{S(0.0F)};                ///< in [0, 1]; 0 means no opinion
+  S speed_share{S(1.0F)};               ///< in [0, 1]: how much of the speed that is allowed the field wants to use
 };
 
 /// A course from a vector taken apart, and a confidence over 0. No opinion where the vector has no direction, which is
 /// then (0, 0): so direction (0, 0) and confidence 0 always come together.
 template <Number S>
-[[nodiscard]] Course<S> course_along(Polar<S> const& way, S const& confidence) noexcept {
-  return {way.direction, select(way.length > S(no_length), confidence, S(0.0F))};
+[[nodiscard]] Course<S> course_along(Polar<S> const& way, S const& confidence,
+                                     S const& speed_share = S(1.0F)) noexcept {
+  return {way.direction, select(way.length > S(no_length), confidence, S(0.0F)), speed_share};
 }
 
 /// A course from a vector that need not be a unit one.
 template <Number S>
-[[nodiscard]] Course<S> course_along(Vec2<S> const& vector, S const& confidence) noexcept {
-  return course_along(polar(vector), confidence);
+[[nodiscard]] Course<S> course_along(Vec2<S> const& vector, S const& confidence,
+                                     S const& speed_share = S(1.0F)) noexcept {
+  return course_along(polar(vector), confidence, speed_share);
 }
 
 namespace detail {

@@ -10,6 +10,7 @@
 #include "wend/motion/differential_drive.hpp"
 #include "wend/motion/pace.hpp"
 #include "wend/motion/steering.hpp"
+#include "wend/moving_discs.hpp"
 #include "wend/number.hpp"
 #include "wend/percept.hpp"
 #include "wend/watch/freshness.hpp"
@@ -72,6 +73,12 @@ struct Loop {
                                           Memory<S>& memory) const noexcept {
     return tick(now, discs, mask_t<S>{}, memory);
   }
+  /// The same with discs that move.
+  template <Number S, int N>
+  [[nodiscard]] constexpr Command<S> tick(Situation<S> const& now, MovingDiscSet<S, N> const& discs,
+                                          Memory<S>& memory) const noexcept {
+    return tick(now, discs, mask_t<S>{}, memory);
+  }
 
   /// Readings in, command out. The discs are made in the robot's own frame, and so is the course. Capacity is the
   /// number of discs kept.
@@ -87,12 +94,12 @@ struct Loop {
   }
 
  private:
-  template <Number S, int N>
-  [[nodiscard]] constexpr Command<S> tick(Situation<S> const& now, DiscSet<S, N> const& discs, mask_t<S> const& blind,
+  template <Number S, typename Discs>
+  [[nodiscard]] constexpr Command<S> tick(Situation<S> const& now, Discs const& discs, mask_t<S> const& blind,
                                           Memory<S>& memory) const noexcept {
     Command<S> command;
     Findings<S>& findings = command.findings;
-    Percept<S, N> const percept = look(now.pose, now.goal, discs, S(robot_radius), now.dt);
+    auto const percept = look(now.pose, now.goal, discs, S(robot_radius), now.dt);
     findings.stale = freshness.stale(now.dt, now.age);
     findings.blind = blind || discs.rejected() || !sound(now.pose) || !finite(now.goal) ||
                      !(percept.goal_distance < S(far_away));

@@ -3,6 +3,7 @@
 
 #include "wend/disc.hpp"
 #include "wend/members.hpp"
+#include "wend/moving_discs.hpp"
 #include "wend/number.hpp"
 #include "wend/plane.hpp"
 
@@ -26,6 +27,11 @@ struct Percept {
   Vec2<S> away;            ///< unit, from the nearest disc's centre to the robot's; (0, 0) when they coincide or
                            ///< there is no disc
   S away_confidence;       ///< 1, or 0 where away is (0, 0)
+
+  Vec2<S> const* velocities = nullptr;  ///< one a disc, metres a second over the ground; null where all stand still
+
+  /// The velocity of disc i of `discs`: metres a second over the ground, along the axes of this frame.
+  [[nodiscard]] Vec2<S> velocity(int i) const noexcept { return velocities == nullptr ? zero2<S>() : velocities[i]; }
 };
 
 /// Digests what is known: the direction and distance of the goal, the nearest disc, its clearance and the direction
@@ -68,11 +74,24 @@ template <Number S, int Capacity>
           nearest,
           least_gap - robot_radius,
           {select(some_disc, away.direction.x(), S(0.0F)), select(some_disc, away.direction.y(), S(0.0F))},
-          select(some_disc, S(1.0F), S(0.0F))};
+          select(some_disc, S(1.0F), S(0.0F)),
+          nullptr};
+}
+
+/// The same of discs that move: what is digested is where they are now, and the percept knows how they move.
+template <Number S, int Capacity>
+[[nodiscard]] Percept<S, Capacity> look(Pose<S> const& pose, Vec2<S> const& goal,
+                                        MovingDiscSet<S, Capacity> const& discs, S robot_radius, S dt) noexcept {
+  DiscSet<S, Capacity> const& places = discs;
+  Percept<S, Capacity> percept = look(pose, goal, places, robot_radius, dt);
+  percept.velocities = discs.velocities();
+  return percept;
 }
 
 /// A percept refers to its discs: give look a set that outlives it.
 template <Number S, int Capacity>
 Percept<S, Capacity> look(Pose<S> const&, Vec2<S> const&, DiscSet<S, Capacity> const&&, S, S) = delete;
+template <Number S, int Capacity>
+Percept<S, Capacity> look(Pose<S> const&, Vec2<S> const&, MovingDiscSet<S, Capacity> const&&, S, S) = delete;
 
 }  // namespace wend::inline v0

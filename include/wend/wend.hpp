@@ -20,6 +20,7 @@
 #include "wend/motion/differential_drive.hpp"
 #include "wend/motion/pace.hpp"
 #include "wend/motion/steering.hpp"
+#include "wend/moving_discs.hpp"
 #include "wend/number.hpp"
 #include "wend/percept.hpp"
 #include "wend/plane.hpp"

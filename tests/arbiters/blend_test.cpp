@@ -192,3 +192,32 @@ TEST_CASE_TEMPLATE("a blend of broken directions has no opinion", S, WEND_TEST_N
   CHECK(confidence_of(scenes::answer(halves, scene)) == 0.0);
   CHECK(direction_of(scenes::answer(halves, scene)) == 0.0);
 }
+
+namespace {
+
+// Along the nose with a share of the speed.
+struct slowly {
+  wend::Parameter share;
+  template <wend::Number S, int N>
+  [[nodiscard]] constexpr wend::Course<S> operator()(wend::Percept<S, N> const& percept) const noexcept {
+    return wend::course_along(percept.pose.heading, S(1.0F), S(share));
+  }
+};
+
+}  // namespace
+
+TEST_CASE_TEMPLATE("a blend weighs the speeds its fields want as it weighs their directions", S, WEND_TEST_NUMBERS) {
+  auto const share = [](auto const& policy, float clearance) {
+    return static_cast<double>(numbers::first(scenes::answer(policy, scene_with<S>(0.3, 0.3, clearance)).speed_share));
+  };
+  constexpr auto ramped = wend::blend(wend::ramp(wend::clearance, 0.5F, 1.5F), slowly{0.25F}, slowly{0.75F});
+  CHECK(share(ramped, 0.4F) == 0.25);
+  CHECK(share(ramped, 1.0F) == doctest::Approx(0.5).epsilon(1e-6));
+  CHECK(share(ramped, 2.0F) == 0.75);
+  constexpr auto in_shares = wend::blend(wend::share(1.0F, slowly{0.0F}), wend::share(3.0F, slowly{1.0F}));
+  CHECK(share(in_shares, 1.0F) == 0.75);
+  constexpr auto full = wend::blend(wend::ramp(wend::clearance, 0.5F, 1.2F), along_nose{}, wend::toward_goal{});
+  for (int i = 0; i < 50; ++i) {
+    CHECK(share(full, 0.03F * static_cast<float>(i)) == 1.0);  // exactly: firmware counts on the same bits
+  }
+}

@@ -96,6 +96,20 @@ TEST_CASE_TEMPLATE("a course without direction, or with one that is not a number
   CHECK(numbers::all<S>(body.speed >= S(0.0F) && body.speed <= S(0.0F)));
 }
 
+TEST_CASE_TEMPLATE("a course that wants a share of the speed gets it, and never more than all", S, WEND_TEST_NUMBERS) {
+  float const nan = std::numeric_limits<float>::quiet_NaN();
+  auto const speed = [](float share) {
+    Course<S> course{unit<S>(0.0), S(1.0F), S(share)};
+    return static_cast<double>(numbers::first(steering(course, unit<S>(0.0), S(0.5F)).speed));
+  };
+  CHECK(speed(1.0F) == 0.5);
+  CHECK(speed(0.25F) == 0.125);
+  CHECK(speed(0.0F) == 0.0);
+  CHECK(speed(3.0F) == 0.5);
+  CHECK(speed(-1.0F) == 0.0);
+  CHECK(speed(nan) == 0.0);
+}
+
 // The model outside the library is the kinematics of a unicycle, d(theta)/dt = omega (common practice, no source),
 // here in double and with the C library's sine and cosine.
 TEST_CASE_TEMPLATE("a unicycle comes to any course from any heading, never turning away", S, float, double) {

@@ -43,7 +43,8 @@ struct fixed_weight {
 /// (1 - w) low + w high, each course counted as its direction times its confidence. The direction is that of the sum.
 /// The confidence is its length: with two sure fields the mean resultant length of what is blended (Mardia and Jupp
 /// 2000, eq. 2.2.4), 1 where they agree and 0 where they cancel, and then there is no opinion. A field without an
-/// opinion gives up its share of the confidence and leaves the direction to the other.
+/// opinion gives up its share of the confidence and leaves the direction to the other. The speed share is blended as it
+/// is, whatever the confidences.
 template <typename Weight, typename Low, typename High>
 struct blended_field {
   [[no_unique_address]] Weight weight;
@@ -64,7 +65,8 @@ struct blended_field {
     Vec2<S> const sum = scaled(at_low.direction, S((S(1.0F) - w) * at_low.confidence)) +
                         scaled(at_high.direction, S(w * at_high.confidence));
     Polar<S> const way = polar(sum);
-    return course_along(way, least(way.length, S(1.0F)));
+    S const more = w * (at_high.speed_share - at_low.speed_share);  // 0 where they agree, so that 1 and 1 make 1
+    return course_along(way, least(way.length, S(1.0F)), clamp(S(at_low.speed_share + more), S(0.0F), S(1.0F)));
   }
 };
 
