@@ -22,13 +22,13 @@
 
 #include <wend/lab/arrival_map.hpp>
 #include <wend/lab/arrival_picture.hpp>
-#include <wend/lab/csv.hpp>
 #include <wend/lab/picture.hpp>
 #include <wend/lab/prove.hpp>
 #include <wend/lab/simulate.hpp>
 #include <wend/lab/trace.hpp>
 
 #include "../policies.hpp"
+#include "../stand.hpp"
 #include "cellar.hpp"
 
 namespace {
@@ -49,30 +49,9 @@ struct Scene {
   lab::Region region{};
 };
 
-Scene stand(std::string const& file) {
-  lab::Table const table = lab::parse_table(file, lab::read_whole(file), [](std::string const&) { return false; });
-  std::size_t const x = table.column("x");
-  std::size_t const y = table.column("y");
-  std::size_t const diameter = table.column("diameter");
-  if (table.rows.empty()) {
-    throw lab::FileError(file, table.names_line + 1, 1, "expected at least one stem, found none");
-  }
-  Scene scene;
-  scene.title = "A cart crosses a stand of " + std::to_string(table.rows.size()) + " trees";
-  Vec2<double> low{table.rows[0][x], table.rows[0][y]};
-  Vec2<double> high = low;
-  for (std::size_t i = 0; i < table.rows.size(); ++i) {
-    auto const& row = table.rows[i];
-    if (!(row[diameter] > 0.0)) {
-      throw table.error(i, diameter, "expected a diameter over 0, found " + lab::detail::fixed(row[diameter], 3));
-    }
-    scene.world.add(row[x], row[y], 0.5 * row[diameter]);
-    low = low.cwiseMin(Vec2<double>{row[x], row[y]});
-    high = high.cwiseMax(Vec2<double>{row[x], row[y]});
-  }
-  double const middle = 0.5 * (low.y() + high.y());
-  scene.trip = {{{low.x() - 2.0, middle}, {1.0, 0.0}}, {high.x() + 2.0, middle}, 30.0 + 8.0 * (high.x() - low.x())};
-  return scene;
+Scene crossing(std::string const& file) {
+  stand::Stand const trees = stand::read(file);
+  return {"A cart crosses a stand of " + std::to_string(trees.world.discs.size()) + " trees", trees.world, trees.trip};
 }
 
 /// What is known about one policy: a run, and where the scene is small enough, what holds for all states.
@@ -140,7 +119,7 @@ void print_statements(std::vector<Reviewed> const& all) {
 int review(std::string const& out, std::string const& map, std::uint64_t seed, bool runs_only) {
   Scene const scene =
       map.empty() ? Scene{"A tray cart crosses the mushroom cellar", cellar::world(), cellar::trip(), cellar::region}
-                  : stand(map);
+                  : crossing(map);
   std::error_code why;  // before the work, so that it is not for nothing
   std::filesystem::create_directories(out, why);
   if (why || !std::filesystem::is_directory(out)) {

@@ -9,6 +9,7 @@
 #include <limits>
 #include <numbers>
 #include <span>
+#include <type_traits>
 #include <vector>
 
 #include "wend/lab/arc.hpp"
@@ -17,6 +18,7 @@
 #include "wend/lab/vehicle.hpp"
 #include "wend/lab/world.hpp"
 #include "wend/loop.hpp"
+#include "wend/moving_discs.hpp"
 #include "wend/sensing/ring.hpp"
 
 namespace wend::inline v0::lab {
@@ -100,6 +102,20 @@ std::array<S, static_cast<std::size_t>(Beams)> read_ring(Ring<Beams> const& ring
   return ranges;
 }
 
+// What a loop without a ranger is told: the nearest discs within the vehicle's sight, in the world's frame.
+template <PlainNumber S, int Capacity>
+MovingDiscSet<S, Capacity> nearest_discs(World const& world, Vehicle const& vehicle, Pose<double> const& pose,
+                                         double time) {
+  MovingDiscSet<S, Capacity> discs;
+  for (WorldDisc const& d : world.discs) {
+    Disc<double> const now = World::at(d, time);
+    if (v0::gap(now, pose.position) <= vehicle.sight) {
+      discs.add({now.centre.cast<S>(), static_cast<S>(now.radius)}, d.velocity.cast<S>(), pose.position.cast<S>());
+    }
+  }
+  return discs;
+}
+
 // The wheels: they answer late, and speed up only so fast.
 class Wheels {
  public:
@@ -138,12 +154,15 @@ class Wheels {
 
 }  // namespace detail
 
+inline constexpr int discs_told = 24;  ///< that a loop without a ranger is told at most
+
 /// Drives from start to goal. The world is in double precision; the loop runs on S, float as on the machine. Each tick
 /// the ranger is read (noise, dropouts), the loop decides, and the wheels follow after the vehicle's latency with its
 /// acceleration; the body moves along exact arcs of at most 5 ms, over each of which the wheel rates are held at their
 /// mean. Contact and clearance are taken over whole arcs. A moving disc is held still, where it is in the middle of the
-/// arc. The same arguments give the same run: `seed` and `run_number` choose the noise. The vehicle's period must be
-/// over 0 and its jitter under 1.
+/// arc. A loop without a ranger is told the nearest `discs_told` discs within the vehicle's sight, as they are and as
+/// they move. The same arguments give the same run: `seed` and `run_number` choose the noise. The vehicle's period must
+/// be over 0 and its jitter under 1.
 template <PlainNumber S = float, typename Loop>
 [[nodiscard]] Run simulate(Loop const& loop, Vehicle const& vehicle, World const& world, Trip const& trip,
                            std::uint64_t seed, std::uint64_t run_number = 0, bool keep_ticks = false) {
@@ -176,8 +195,14 @@ template <PlainNumber S = float, typename Loop>
     now.pose = {believed.position.cast<S>(), believed.heading.cast<S>()};
     now.goal = trip.goal.cast<S>();
     now.dt = static_cast<S>(dt);
-    auto const ranges = detail::read_ring<S>(loop.sensing, vehicle, world, pose, run.time, draws, tick, near);
-    Command<S> const command = loop.tick(now, std::span<S const, ranges.size()>(ranges), memory);
+    Command<S> const command = [&] {
+      if constexpr (std::is_same_v<decltype(loop.sensing), no_sensing>) {
+        return loop.tick(now, detail::nearest_discs<S, discs_told>(world, vehicle, pose, run.time), memory);
+      } else {
+        auto const ranges = detail::read_ring<S>(loop.sensing, vehicle, world, pose, run.time, draws, tick, near);
+        return loop.tick(now, std::span<S const, ranges.size()>(ranges), memory);
+      }
+    }();
     run.last_status = status_of(command);
 
     std::uint32_t const modes_now = modes_of(memory);

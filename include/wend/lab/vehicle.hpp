@@ -15,6 +15,7 @@ struct Vehicle {
   double period = 0.05;        ///< seconds between ticks
   double jitter = 0.0;         ///< share by which a period varies, evenly to both sides
   double range_noise = 0.01;   ///< metres, standard deviation of one range
+  double sight = 6.0;          ///< metres: how far a loop is told of discs that has no ranger of its own
   double dropout = 0.01;       ///< share of the beams that read 0 at any time
   double position_noise = 0.0;  ///< metres, standard deviation of each coordinate of the pose estimate, anew each tick
   double heading_noise = 0.0;  ///< radians, standard deviation of the estimated heading, anew each tick

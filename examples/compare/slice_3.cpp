@@ -1,0 +1,3 @@
+#include "slices.hpp"
+
+compare::Slice compare::slice_3() { return make_slice<3>(); }
