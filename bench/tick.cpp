@@ -18,6 +18,7 @@
 #include <benchmark/benchmark.h>
 
 #include "medians.hpp"
+#include "random.hpp"
 #include "textbook.h"  // takes in by_hand.h
 #include "wend/wend.hpp"
 
@@ -49,23 +50,6 @@ struct Table {
   std::vector<textbook_memory> textbook_memories;
 };
 
-// Steele, Lea and Flood (2014), Fast splittable pseudorandom number generators: the mixing function they call
-// SplitMix64, so that the scenes are the same with every standard library.
-class Random {
- public:
-  float between(float low, float high) noexcept {
-    state_ += 0x9e3779b97f4a7c15U;
-    std::uint64_t z = state_;
-    z = (z ^ (z >> 30U)) * 0xbf58476d1ce4e5b9U;
-    z = (z ^ (z >> 27U)) * 0x94d049bb133111ebU;
-    z ^= z >> 31U;
-    return low + (high - low) * static_cast<float>(z >> 40U) * 0x1p-24F;
-  }
-
- private:
-  std::uint64_t state_ = 2024;
-};
-
 // Each out of line, so that it pays for one call and nothing is moved out of the loop over the scenes; and flat, so
 // that what is inlined does not depend on how often this file uses a function.
 [[gnu::noinline, gnu::flatten]] wend::Course<float> decide_composed(Scene const& scene, Memory& memory) noexcept {
@@ -89,7 +73,7 @@ class Random {
 // Drives of 64 ticks each through squares of 7 m with eight discs: what a loop sees, one tick much like the one before,
 // and every branch of the policy met. Each scene comes with the memories that the tick before has left behind.
 Table driven_table() {
-  Random random;
+  bench::Random random;
   Table table;
   Scene scene;
   hand_scene hand{};
