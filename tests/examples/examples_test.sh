@@ -166,6 +166,35 @@ check 'refused options: nothing is written' is_absent review-out
 run review --help
 check 'review --help: usage on stdout, exit code 0' sh -c '[ "$1" -eq 0 ] && grep -q "^usage: review" stdout' - "$code"
 
+# --- compare: every method through the same scenes. -------------------------------------------------------------------
+
+run compare --runs 2
+check 'compare: exit code 0' ended_with 0
+check 'compare: says nothing on stderr' sh -c '[ ! -s stderr ]'
+check 'compare: five scenes' are_equal 5 "$(grep -cE '^(open|disc|trap|passage|crossers): ' stdout)"
+check 'compare: goes to the goal where nothing stands' prints '^toward_goal +2/2 +0 +1\.00 +- '
+check 'compare: a potential stays in the trap' sh -c 'sed -n "/^trap/,/^passage/p" stdout | grep -qE "^potential_field +0/2 "'
+cp stdout first
+run compare --runs 2
+check 'compare: the same again, byte for byte' cmp -s stdout first
+run compare --runs 1 --map "$data/spruces.csv" --markdown
+check 'compare --map: a sixth scene' prints '^\*\*trees\*\*: a stand of 134 trees'
+refuses 'compare without a run' "--runs expects a whole number from 1 to 10000, found '0'" compare --runs 0
+refuses 'compare with a map that is not there' 'compare: nowhere.csv: expected a file that can be read' \
+  compare --map nowhere.csv
+
+# --- faults: one after another. ---------------------------------------------------------------------------------------
+
+run faults --runs 3
+check 'faults: whatever has to be survived is' ended_with 0
+check 'faults: says nothing on stderr' sh -c '[ ! -s stderr ]'
+check 'faults: a dead ranger is noticed at once' prints '^all beams dead +blind +0\.0[0-9] +0/3 +0 '
+check 'faults: a frozen clock is noticed at once' prints '^clock frozen +stale +0\.0[0-9] +0/3 +0 '
+check 'faults: a ranger that sees nothing is driven into things, and it says so' \
+  prints '^all beams see nothing +- +- +0/3 +3 \[[0-9]\]'
+check 'faults: a watchdog saves what a late tick breaks' prints '^tick late by 20 periods, drive with watchdog +stale.* 0 +[1-9]'
+refuses 'faults with runs that are no number' "found 'many'" faults --runs many
+
 # --- replay: one decision a row. -------------------------------------------------------------------------------------
 
 decision='^ *[0-9]+\.[0-9]{3} +[0-9]+ +[0-9]+ '

@@ -13,6 +13,7 @@
 #include <vector>
 
 #include "wend/lab/arc.hpp"
+#include "wend/lab/mishap.hpp"
 #include "wend/lab/modes.hpp"
 #include "wend/lab/random.hpp"
 #include "wend/lab/vehicle.hpp"
@@ -132,7 +133,11 @@ class Wheels {
   [[nodiscard]] WheelRates<double> turn(double time, double step) {
     while (!queue_.empty() && queue_.front().from <= time + 1e-9) {
       wanted_ = queue_.front().rates;
+      since_ = queue_.front().from;
       queue_.pop_front();
+    }
+    if (time - since_ > vehicle_.watchdog) {
+      wanted_ = {};
     }
     double const change = vehicle_.acceleration / static_cast<double>(vehicle_.drive.wheel_radius) * step;
     WheelRates<double> const before = now_;
@@ -149,6 +154,7 @@ class Wheels {
   Vehicle const& vehicle_;
   std::deque<Order> queue_;
   WheelRates<double> wanted_;
+  double since_ = 0.0;  // when these were asked for
   WheelRates<double> now_;
 };
 
@@ -161,11 +167,13 @@ inline constexpr int discs_told = 24;  ///< that a loop without a ranger is told
 /// acceleration; the body moves along exact arcs of at most 5 ms, over each of which the wheel rates are held at their
 /// mean. Contact and clearance are taken over whole arcs. A moving disc is held still, where it is in the middle of the
 /// arc. A loop without a ranger is told the nearest `discs_told` discs within the vehicle's sight, as they are and as
-/// they move. The same arguments give the same run: `seed` and `run_number` choose the noise. The vehicle's period must
-/// be over 0 and its jitter under 1.
+/// they move. A mishap, if there is one, meddles with what the loop is told and with its wheels. The same arguments
+/// give the same run: `seed` and `run_number` choose the noise. The vehicle's period must be over 0 and its jitter
+/// under 1.
 template <PlainNumber S = float, typename Loop>
 [[nodiscard]] Run simulate(Loop const& loop, Vehicle const& vehicle, World const& world, Trip const& trip,
-                           std::uint64_t seed, std::uint64_t run_number = 0, bool keep_ticks = false) {
+                           std::uint64_t seed, std::uint64_t run_number = 0, bool keep_ticks = false,
+                           Mishap<S>* mishap = nullptr) {
   constexpr double finest = 0.005;
   Run run;
   run.straight_length = (trip.goal - trip.start.position).norm();
@@ -195,11 +203,18 @@ template <PlainNumber S = float, typename Loop>
     now.pose = {believed.position.cast<S>(), believed.heading.cast<S>()};
     now.goal = trip.goal.cast<S>();
     now.dt = static_cast<S>(dt);
+    Moment const moment{tick, run.time, draws};
+    if (mishap != nullptr) {
+      mishap->situation(moment, now);
+    }
     Command<S> const command = [&] {
       if constexpr (std::is_same_v<decltype(loop.sensing), no_sensing>) {
         return loop.tick(now, detail::nearest_discs<S, discs_told>(world, vehicle, pose, run.time), memory);
       } else {
-        auto const ranges = detail::read_ring<S>(loop.sensing, vehicle, world, pose, run.time, draws, tick, near);
+        auto ranges = detail::read_ring<S>(loop.sensing, vehicle, world, pose, run.time, draws, tick, near);
+        if (mishap != nullptr) {
+          mishap->readings(moment, ranges);
+        }
         return loop.tick(now, std::span<S const, ranges.size()>(ranges), memory);
       }
     }();
@@ -234,12 +249,17 @@ template <PlainNumber S = float, typename Loop>
 
     wheels.ask(run.time, {static_cast<double>(command.wheels.left), static_cast<double>(command.wheels.right)});
     dt = vehicle.period * (1.0 + vehicle.jitter * draws.between(-1.0, 1.0, {detail::of_period, tick}));
+    dt += mishap == nullptr ? 0.0 : mishap->delay(moment);
     int const steps = static_cast<int>(std::ceil(dt / finest));
     double const step = dt / steps;
     look_near(run.time, fastest * dt);
     for (int i = 0; i < steps; ++i) {
       double const time = run.time + i * step;
-      BodyVelocity<double> const body = vehicle.drive.body(wheels.turn(time, step));
+      WheelRates<double> rates = wheels.turn(time, step);
+      if (mishap != nullptr) {
+        mishap->wheels(time, rates);
+      }
+      BodyVelocity<double> const body = vehicle.drive.body(rates);
       if (moving) {
         look_near(time + 0.5 * step, fastest * step);
       }

@@ -12,6 +12,7 @@ struct Vehicle {
   double radius = 0.20;        ///< metres: of the circle that holds the whole body
   double acceleration = 2.0;   ///< metres a second squared that a wheel's rim can speed up or brake with
   double latency = 0.05;       ///< seconds from the readings to the wheels' first response
+  double watchdog = 1e9;       ///< seconds after which wheels that were told nothing new stop by themselves
   double period = 0.05;        ///< seconds between ticks
   double jitter = 0.0;         ///< share by which a period varies, evenly to both sides
   double range_noise = 0.01;   ///< metres, standard deviation of one range
