@@ -1,7 +1,7 @@
 #!/bin/sh
 # cmake/matrix.sh - the wider check. With no argument every step, else those named: g++, clang++-14, clang++,
-# clang++-19 (all tests with that compiler), sanitizers, bare, tidy. Each builds in build/<step>/. What a machine has
-# no tool for is skipped, and says so.
+# clang++-19 (all tests with that compiler), sanitizers, threads, bare, tidy. Each builds in build/<step>/. What a
+# machine has no tool for is skipped, and says so.
 set -eu
 case $0 in */*) cd "${0%/*}/.." ;; *) cd .. ;; esac
 
@@ -18,6 +18,16 @@ has() {
 sanitizers() {
   WEND_QUICK=1 WEND_BUILD=build/sanitizers sh cmake/test.sh -DCMAKE_BUILD_TYPE=Debug -DCMAKE_CXX_FLAGS_DEBUG=-g1 \
     -DWEND_WERROR=OFF -DWEND_BENCH=OFF -DCMAKE_CXX_FLAGS='-O1 -fsanitize=address,undefined -fno-sanitize-recover=all -fno-omit-frame-pointer'
+}
+
+# Two loops in two threads, under the thread sanitizer.
+threads() {
+  setup_for=tests
+  . cmake/setup.sh
+  cmake -S . -B build/threads -DCMAKE_BUILD_TYPE=Debug -DCMAKE_CXX_FLAGS_DEBUG=-g1 -DWEND_TESTS=ON -DWEND_EXAMPLES=OFF \
+    -DWEND_BENCH=OFF -DCMAKE_CXX_FLAGS='-O1 -fsanitize=thread'
+  cmake --build build/threads --target alone_two_loops
+  build/threads/tests/alone/alone_two_loops
 }
 
 # What runs on a robot, as firmware compiles it: no exceptions, no RTTI, nothing of Eigen's that prints or allocates.
@@ -39,12 +49,12 @@ tidy() {
 if [ $# -eq 0 ]; then
   clang=clang++-14
   command -v $clang >/dev/null || clang=clang++
-  set -- g++ $clang clang++-19 sanitizers bare tidy
+  set -- g++ $clang clang++-19 sanitizers threads bare tidy
 fi
 for step in "$@"; do
   printf '\n=== %s ===\n' "$step"
   case $step in
-    sanitizers | bare | tidy) $step ;;
+    sanitizers | threads | bare | tidy) $step ;;
     *++*) if has "$step"; then CXX=$step sh cmake/test.sh; fi ;;
     *)
       echo "no such step: $step" >&2
