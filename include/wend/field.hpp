@@ -90,6 +90,10 @@ namespace detail {
 template <typename F, typename S>
 consteval void check_field() {
   static_assert(
+      std::is_trivially_copyable_v<F>,
+      "wend: this heading field owns something, or copies itself in a way of its own, so its policy can be no "
+      "constant in flash; keep plain numbers and std::array in it, and what changes in a Memory<S>");
+  static_assert(
       !requires(F& f, Percept<S, 1> const& p) { f(p); } || ForgetsOn<F, S> || RemembersOn<F, S>,
       "wend: this heading field forgets const; write: auto operator()(auto const& percept) const");
   static_assert(ForgetsOn<F, S> || RemembersOn<F, S>,

@@ -24,6 +24,7 @@
 #include "wend/number.hpp"
 #include "wend/percept.hpp"
 #include "wend/plane.hpp"
+#include "wend/promise.hpp"
 #include "wend/sensing/ring.hpp"
 #include "wend/watch/freshness.hpp"
 #include "wend/watch/progress.hpp"

@@ -14,7 +14,7 @@ if said=$("$@" "$source" 2>&1); then
   echo "$source compiles, and must not"
   exit 1
 fi
-first=$(printf '%s\n' "$said" | grep -m 1 'error:')
+first=$(printf '%s\n' "$said" | awk '/error:/ && ++errors > 1 { exit } errors')
 case $first in
   *"$sentence"*) ;;
   *)

@@ -2,10 +2,18 @@
 #pragma once
 
 #include "wend/arbiters/guard.hpp"
-#include "wend/config.hpp"
 #include "wend/field.hpp"
+#include "wend/promise.hpp"
 
 namespace wend::inline v0 {
+
+namespace detail {
+
+// Called only by a constant that must not be one.
+inline void wend_ramp_needs_low_under_high() noexcept {}
+inline void wend_share_needs_a_weight_of_zero_or_more() noexcept {}
+
+}  // namespace detail
 
 /// A weight that rises from 0 where the signal is at `low` to 1 where it is at `high`, straight in between. Unit of the
 /// signal, low < high. 0 for a signal that is not a number.
@@ -26,7 +34,7 @@ struct ramp_weight {
 template <typename Signal>
 [[nodiscard]] constexpr ramp_weight<Signal> ramp(Signal signal, Parameter low, Parameter high) noexcept {
   detail::check_signal<Signal>();
-  WEND_ASSERT(low < high);
+  detail::promise(low < high, detail::wend_ramp_needs_low_under_high);
   return {signal, low, high};
 }
 
@@ -81,7 +89,7 @@ struct Share {
 template <typename Field>
 [[nodiscard]] constexpr Share<Field> share(Parameter weight, Field field) noexcept {
   detail::check_field<Field, float>();
-  WEND_ASSERT(weight >= 0.0F);
+  detail::promise(weight >= 0.0F, detail::wend_share_needs_a_weight_of_zero_or_more);
   return {weight, field};
 }
 

@@ -1,9 +1,11 @@
 // wend/arbiters/guard.hpp - guards: a yes or no with hysteresis, from a signal and thresholds, and their combinations.
 #pragma once
 
-#include "wend/config.hpp"
+#include <type_traits>
+
 #include "wend/field.hpp"
 #include "wend/number.hpp"
+#include "wend/promise.hpp"
 
 namespace wend::inline v0 {
 
@@ -32,6 +34,19 @@ consteval void check_signal() {
                 "wend: a signal is a functor that takes a percept by const reference and returns a number, such as "
                 "wend::clearance");
 }
+
+// Stands where a signal was forgotten, so that only one error is shown.
+struct NoSignal {
+  template <Number S, int N>
+  constexpr S operator()(Percept<S, N> const&) const noexcept {
+    return S(0.0F);
+  }
+};
+
+// Called only by a constant that must not be one.
+inline void wend_below_needs_enter_at_most_leave_so_swap_the_thresholds() noexcept {}
+inline void wend_above_needs_enter_at_least_leave_so_swap_the_thresholds() noexcept {}
+inline void wend_held_needs_a_dwell_of_zero_seconds_or_more() noexcept {}
 
 }  // namespace detail
 
@@ -163,7 +178,7 @@ struct negated_guard {
 template <typename Signal>
 [[nodiscard]] constexpr below_guard<Signal> below(Signal signal, Parameter enter, Parameter leave) noexcept {
   detail::check_signal<Signal>();
-  WEND_ASSERT(enter <= leave);
+  detail::promise(enter <= leave, detail::wend_below_needs_enter_at_most_leave_so_swap_the_thresholds);
   return {signal, enter, leave};
 }
 
@@ -171,15 +186,29 @@ template <typename Signal>
 template <typename Signal>
 [[nodiscard]] constexpr above_guard<Signal> above(Signal signal, Parameter enter, Parameter leave) noexcept {
   detail::check_signal<Signal>();
-  WEND_ASSERT(enter >= leave);
+  detail::promise(enter >= leave, detail::wend_above_needs_enter_at_least_leave_so_swap_the_thresholds);
   return {signal, enter, leave};
+}
+
+/// Thresholds alone are no guard; these only say so.
+template <typename Nothing = void>
+constexpr auto below(Parameter enter, Parameter leave) noexcept {
+  static_assert(!std::is_void_v<Nothing>,
+                "wend: below needs the signal that is compared: below(clearance, 0.30F, 0.50F)");
+  return below_guard<detail::NoSignal>{{}, enter, leave};
+}
+template <typename Nothing = void>
+constexpr auto above(Parameter enter, Parameter leave) noexcept {
+  static_assert(!std::is_void_v<Nothing>,
+                "wend: above needs the signal that is compared: above(goal_distance, 0.50F, 0.30F)");
+  return above_guard<detail::NoSignal>{{}, enter, leave};
 }
 
 /// held(guard, 0.4F): keeps each answer for 0.4 s at least.
 template <typename Guard>
 [[nodiscard]] constexpr held_guard<Guard> held(Guard guard, Parameter dwell) noexcept {
   detail::check_guard<Guard>();
-  WEND_ASSERT(dwell >= 0.0F);
+  detail::promise(dwell >= 0.0F, detail::wend_held_needs_a_dwell_of_zero_seconds_or_more);
   return {guard, dwell};
 }
 
