@@ -1,7 +1,8 @@
 #!/bin/sh
 # cmake/mutants.sh - would the tests notice? Changes the robot side in one place at a time (a comparison, a sign, a
 # constant, a logical operator, the order of select's two answers), builds the nearest tests against the change, and
-# counts how many changes they notice. Prints each survivor as file:line: before -> after, and a score.
+# counts how many changes they notice. Prints each survivor as it is found (file:line: before -> after, on stderr), and a
+# score.
 #
 #   sh cmake/mutants.sh                        100 changes, drawn evenly from all
 #   sh cmake/mutants.sh --sample 400 --seed 2  others, and more of them
@@ -152,6 +153,7 @@ try() { # try <place> <a line of the list>: "killed", "survived" or "broken"
   if [ $verdict = survived ] && grep -qxF "$(printf '%s\t%s' "$file" "$after")" "$work/known"; then
     verdict=same
   fi
+  [ $verdict != survived ] || echo "$file:$(printf '%s' "$2" | cut -f 2): $before  ->  $after" >&2
   printf '%s\t%s:%s: %s  ->  %s\n' $verdict "$file" "$(printf '%s' "$2" | cut -f 2)" "$before" "$after"
   rm -rf "$dir"
 }
@@ -173,7 +175,6 @@ done
 wait
 
 cat "$work"/results.* | sort >"$work/results"
-grep '^survived' "$work/results" | cut -f 2 || true
 count() { grep -c "^$1" "$work/results" || true; }
 killed=$(count killed)
 survived=$(count survived)
