@@ -1,26 +1,29 @@
 #!/bin/sh
-# cmake/coverage.sh - which branches of the robot side do the tests take? Builds the tests in build/coverage, unoptimised and
-# counting, runs them, and prints the share of branches taken a header (all instantiations of a template together), then
-# each branch that was never taken. Takes g++ and gcovr (Debian: gcovr). Branches that cannot be reached, and why, are
-# in cmake/coverage.keep: file:line's text, a tab, the reason.
+# cmake/coverage.sh - which branches of the robot side do the tests take? Builds the tests in build/coverage with clang,
+# unoptimised and counting, runs them, and prints for each header how many branches were taken, all instantiations of a
+# template together; then each that was never taken. Those that cannot be, and why, are in cmake/coverage.keep. The tests
+# of lab/ are left out: unoptimised they take long, and are not about it. Takes clang, llvm-cov and python3.
 set -eu
 case $0 in */*) cd "${0%/*}/.." ;; *) cd .. ;; esac
 
-if ! command -v gcovr >/dev/null; then
-  echo 'coverage: takes gcovr (Debian: gcovr)' >&2
-  exit 2
-fi
+version=${WEND_LLVM:-14}
+for tool in clang++-"$version" llvm-cov-"$version" llvm-profdata-"$version" python3; do
+  if ! command -v "$tool" >/dev/null; then
+    echo "coverage: takes $tool (Debian: clang-$version llvm-$version libclang-rt-$version-dev python3)" >&2
+    exit 2
+  fi
+done
 build=build/coverage
-CXX=${CXX:-g++}
+CXX=clang++-$version
 export CXX
 setup_for=tests
 . cmake/setup.sh
 cmake -S . -B $build -DCMAKE_BUILD_TYPE=Debug -DWEND_TESTS=ON -DWEND_EXAMPLES=OFF -DWEND_BENCH=OFF -DWEND_WERROR=OFF \
-  -DCMAKE_CXX_FLAGS_DEBUG='-O0 -w --coverage -fno-inline -fprofile-abs-path' >/dev/null
+  -DCMAKE_CXX_FLAGS_DEBUG='-O0 -w -fprofile-instr-generate -fcoverage-mapping' >/dev/null
 cmake --build $build --target wend_tests
-find $build -name '*.gcda' -delete
-$build/tests/wend_tests -m >/dev/null || { echo 'coverage: a test fails' >&2; exit 1; }
-gcovr --root . --filter 'include/wend/' --exclude 'include/wend/lab/' --branches --exclude-throw-branches \
-  --exclude-unreachable-branches --merge-mode-functions=merge-use-line-0 --sort-percentage \
-  --json $build/coverage.json --txt $build/coverage.txt "$build"
-cat $build/coverage.txt
+LLVM_PROFILE_FILE=$build/raw $build/tests/wend_tests -m "--source-file-exclude=*/tests/lab/*,*mpfi_test*" >/dev/null ||
+  { echo 'coverage: a test fails' >&2; exit 1; }
+llvm-profdata-"$version" merge -sparse $build/raw -o $build/merged
+llvm-cov-"$version" export $build/tests/wend_tests -instr-profile=$build/merged -ignore-filename-regex='/(tests|lab)/' \
+  >$build/coverage.json
+python3 cmake/coverage.py $build/coverage.json cmake/coverage.keep
