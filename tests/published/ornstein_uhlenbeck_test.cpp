@@ -1,14 +1,15 @@
 // The wandering of a heading: Uhlenbeck and Ornstein (1930), On the theory of the Brownian motion, Physical Review
 // 36:823-841, as dX = -theta X dt + sigma dW: stationary variance sigma^2 / (2 theta), variance
 // sigma^2 / (2 theta) (1 - exp(-2 theta t)) after t from a standing start, correlation exp(-theta t) over t. Bands are
-// those of the chi-squared distribution (Boost.Math's quantiles) and of Fisher's z for correlations.
+// those of the chi-squared distribution (chi_squared.hpp) and of Fisher's z for correlations. Formulas from memory.
 #include <cmath>
 #include <cstddef>
 #include <random>
 #include <vector>
 
 #include <doctest/doctest.h>
-#include <boost/math/distributions/chi_squared.hpp>
+
+#include "../chi_squared.hpp"
 
 #include "../scenes.hpp"
 #include "wend/fields/roam.hpp"
@@ -50,8 +51,7 @@ bool in_band(std::vector<double> const& samples, double expected) {
   for (double const x : samples) {
     sum += x * x / expected;
   }
-  boost::math::chi_squared const distribution(static_cast<double>(samples.size()));
-  return sum > boost::math::quantile(distribution, 0.005) && sum < boost::math::quantile(distribution, 0.995);
+  return chi_squared::within_99_percent(sum, static_cast<double>(samples.size()));
 }
 
 double variance(std::vector<double> const& samples) {

@@ -9,7 +9,8 @@
 #include <vector>
 
 #include <doctest/doctest.h>
-#include <boost/math/distributions/chi_squared.hpp>
+
+#include "../chi_squared.hpp"
 
 #include "wend/fields/roam.hpp"
 #include "wend/lab/interval.hpp"
@@ -48,8 +49,7 @@ bool evenly_filled(std::vector<double> const& counts) {
   for (double const c : counts) {
     sum += (c - expected) * (c - expected) / expected;
   }
-  boost::math::chi_squared const distribution(static_cast<double>(counts.size() - 1));
-  return sum > boost::math::quantile(distribution, 0.005) && sum < boost::math::quantile(distribution, 0.995);
+  return chi_squared::within_99_percent(sum, static_cast<double>(counts.size() - 1));
 }
 
 }  // namespace
