@@ -1,4 +1,6 @@
 // Walking the members of plain structs, and the one branch that numbers have.
+#include <array>
+#include <cstddef>
 #include <tuple>
 #include <utility>
 
@@ -77,6 +79,15 @@ static_assert(count_of<NineOfThem> == 9, "told apart from eight, so that for_eac
 static_assert(count_of<Memory<float>> == 6 && count_of<Memory<wend::lab::Pack<4>>> == 6);
 static_assert(count_of<Timer<double>> == 2 && count_of<wend::Disc<wend::lab::Pack<8>>> == 2);
 
+// Of any length, beside other members, and of structs.
+template <typename S>
+struct Tracks {
+  std::array<Timer<S>, 20> timers{};
+  S last{S(0.0F)};
+  std::array<S, 3> ranges{};
+};
+static_assert(count_of<Tracks<float>> == 3 && count_of<Tracks<wend::lab::Pack<4>>> == 3);
+
 template <typename S>
 Memory<S> filled(float sign) {
   auto const number = [sign](float start) {
@@ -143,6 +154,52 @@ TEST_CASE("for_each_member has nothing to visit in an empty struct") {
   int visits = 0;
   wend::for_each_member(a, b, [&visits](auto&, auto&) { ++visits; });
   CHECK(visits == 0);
+}
+
+TEST_CASE("for_each_member visits every element of an array, however many, in pairs and in order") {
+  std::array<int, 20> a{};
+  std::array<int, 20> b{};
+  for (std::size_t i = 0; i < a.size(); ++i) {
+    a[i] = static_cast<int>(i);
+    b[i] = -static_cast<int>(i);
+  }
+  std::array<int, 20> const before = b;
+  int seen = 0;
+  bool in_order = true;
+  wend::for_each_member(a, before, [&](int& x, int const& y) {
+    in_order = in_order && x == seen && y == -seen;
+    x = 7;
+    ++seen;
+  });
+  CHECK(seen == 20);
+  CHECK(in_order);
+  CHECK(a[0] == 7);
+  CHECK(a[19] == 7);
+  std::array<int, 0> none{};
+  wend::for_each_member(none, none, [&](int&, int&) { ++seen; });
+  CHECK(seen == 20);
+}
+
+TEST_CASE_TEMPLATE("assign_where changes arrays in a memory in the lanes of the mask and in no other", S,
+                   WEND_TEST_NUMBERS) {
+  wend::mask_t<S> const even = numbers::make_mask<S>([](int k) { return k % 2 == 0; });
+  Tracks<S> to;
+  Tracks<S> from;
+  for (std::size_t i = 0; i < 20; ++i) {
+    from.timers[i] = {S(static_cast<float>(i + 1)), S(1.0F) > S(0.0F)};
+  }
+  from.last = S(5.0F);
+  from.ranges.fill(S(6.0F));
+  wend::assign_where(even, to, from);
+  for (int k = 0; k < numbers::lanes<S>(); ++k) {
+    bool const hit = k % 2 == 0;
+    bool good = numbers::lane(to.last, k) == (hit ? 5 : 0) && numbers::lane(to.ranges[2], k) == (hit ? 6 : 0);
+    for (std::size_t i = 0; i < 20; ++i) {
+      good = good && numbers::holds(to.timers[i].running, k) == hit &&
+             static_cast<int>(numbers::lane(to.timers[i].seconds, k)) == (hit ? static_cast<int>(i + 1) : 0);
+    }
+    CHECK(good);
+  }
 }
 
 TEST_CASE("for_each_member pairs a struct on lanes with the same struct on floats") {

@@ -74,3 +74,17 @@ TEST_CASE_TEMPLATE("a percept knows how its discs move, and that those of a plai
   CHECK(still.clearance == percept.clearance);
   CHECK(still.away == percept.away);
 }
+
+TEST_CASE_TEMPLATE("a velocity that is found out later is the disc's, and one that is no number is told", S, float,
+                   double) {
+  MovingDiscSet<S, 2> discs;
+  discs.add({{S(1), S(0)}, S(0.1F)});
+  discs.add({{S(2), S(0)}, S(0.1F)}, {S(0.5F), S(0)});
+  discs.set_velocity(0, {S(0), S(-1)});
+  CHECK(discs.velocity(0) == Vec2<S>(S(0), S(-1)));
+  CHECK(discs.velocity(1) == Vec2<S>(S(0.5F), S(0)));
+  CHECK_FALSE(discs.rejected());
+  discs.set_velocity(1, {std::numeric_limits<S>::quiet_NaN(), S(0)});
+  CHECK(discs.velocity(1) == Vec2<S>(S(0), S(0)));
+  CHECK(discs.rejected());
+}

@@ -2,9 +2,12 @@
 //
 // A memory is a plain struct of numbers, masks and further plain structs. On a bool mask it is copied whole; on a
 // guest's mask each member has to be selected by itself. The language (C++20) cannot list members; structured bindings
-// can take up to eight of them apart, which is enough for a struct that firmware has to hold.
+// can take up to eight of them apart, which is enough for a struct that firmware has to hold. A std::array among them,
+// of tracks for example, is walked element by element and may be of any length.
 #pragma once
 
+#include <array>
+#include <cstddef>
 #include <type_traits>
 #include <utility>
 
@@ -30,10 +33,25 @@ consteval int member_count() {
   }
 }
 
+template <typename T>
+struct IsArray : std::false_type {};
+template <typename T, std::size_t Size>
+struct IsArray<std::array<T, Size>> : std::true_type {};
+
 }  // namespace detail
 
 /// Calls f(member of a, member of b) for each pair of members of two plain structs, in order: of one type, or of one
-/// template over two numbers.
+/// template over two numbers. The elements of a std::array are its members.
+template <typename T, typename U, typename F>
+  requires detail::IsArray<std::remove_const_t<T>>::value
+constexpr void for_each_member(T& a, U& b, F&& f) noexcept {
+  static_assert(detail::IsArray<std::remove_const_t<U>>::value, "wend: an array beside something that is none");
+  static_assert(std::tuple_size_v<std::remove_const_t<T>> == std::tuple_size_v<std::remove_const_t<U>>,
+                "wend: two arrays of different lengths");
+  for (std::size_t i = 0; i < a.size(); ++i) {
+    f(a[i], b[i]);
+  }
+}
 template <typename T, typename U, typename F>
 constexpr void for_each_member(T& a, U& b, F&& f) noexcept {
   constexpr int count = detail::member_count<std::remove_const_t<T>>();

@@ -4,6 +4,7 @@
 #include <array>
 #include <cstddef>
 
+#include "wend/config.hpp"
 #include "wend/disc.hpp"
 #include "wend/members.hpp"
 #include "wend/number.hpp"
@@ -30,8 +31,20 @@ class MovingDiscSet : public DiscSet<S, Capacity> {
     });
   }
 
+  /// Disc i moves like this, as somebody found out after it was added.
+  void set_velocity(int i, Vec2<S> const& velocity) noexcept {
+    WEND_ASSERT(i >= 0 && i < this->size());
+    mask_t<S> const sound = finite(velocity);
+    this->reject(!sound);
+    velocities_[static_cast<std::size_t>(i)] = select(sound, velocity, zero2<S>());
+  }
+
   /// One velocity a disc, in the order of the discs.
   [[nodiscard]] Vec2<S> const* velocities() const noexcept { return velocities_.data(); }
+  [[nodiscard]] Vec2<S> const& velocity(int i) const noexcept {
+    WEND_ASSERT(i >= 0 && i < this->size());
+    return velocities_[static_cast<std::size_t>(i)];
+  }
 
  private:
   std::array<Vec2<S>, static_cast<std::size_t>(Capacity)> velocities_{};

@@ -137,6 +137,20 @@ TEST_CASE_TEMPLATE("in the middle of a disc, and in one that reaches over it, th
   CHECK(numbers::all<S>(allowed_at<S>(pace, 0.0, over, -1.0) > S(0.0F)));  // out of it, it may go
 }
 
+TEST_CASE_TEMPLATE("for a machine that goes another way than its nose points, that way counts", S, WEND_TEST_NUMBERS) {
+  Pace const pace{};
+  DiscSet<S, 2> discs;
+  discs.add({{S(0.0F), S(0.4F)}, S(0.1F)});  // to the left
+  auto const percept = wend::look(Pose<S>{}, Vec2<S>(S(9.0F), S(0.0F)), discs, S(robot_radius), S(0.05F));
+  auto const along = [&](float x, float y) { return pace(percept, Vec2<S>(S(x), S(y))); };
+  CHECK(numbers::all<S>(along(0.0F, -1.0F) >= S(pace.top_speed)));
+  CHECK(numbers::all<S>(along(0.0F, 1.0F) < S(0.2F)));
+  CHECK(numbers::all<S>(along(1.0F, 0.0F) < S(0.2F)));
+  S const as_nose = along(1.0F, 0.0F);
+  CHECK(numbers::all<S>(pace(percept) >= as_nose && pace(percept) <= as_nose));
+  CHECK(numbers::all<S>(pace.room(percept, Vec2<S>(S(0.0F), S(-1.0F))) > S(1000.0F)));
+}
+
 // An emergency stop: it drives on at the allowed speed for the reaction time, then brakes as hard as it surely can.
 TEST_CASE_TEMPLATE("a point told to stop at any moment comes to rest outside the margin", S, float, double) {
   double const step = 1.0e-4;

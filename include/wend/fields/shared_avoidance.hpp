@@ -2,8 +2,8 @@
 #pragma once
 
 #include "wend/field.hpp"
-#include "wend/fields/half_planes.hpp"
 #include "wend/fields/velocity_cone.hpp"
+#include "wend/half_planes.hpp"
 
 namespace wend::inline v0 {
 

@@ -74,7 +74,17 @@ struct Run {
 
 namespace detail {
 
-enum Purpose : std::uint32_t { of_dropout, of_range, of_period, of_position, of_heading };
+enum Purpose : std::uint32_t { of_dropout, of_range, of_period, of_position, of_heading, of_told, of_slip, of_spread };
+
+// The ranger in a loop's sensing: that itself, or what its steps follow.
+template <typename Sensing>
+auto const& ranger_of(Sensing const& sensing) {
+  if constexpr (requires { sensing.step; }) {
+    return ranger_of(sensing.sensing);
+  } else {
+    return sensing;
+  }
+}
 
 // A loop's ranger in a world: one row of readings.
 template <PlainNumber S, int Beams>
@@ -103,19 +113,50 @@ std::array<S, static_cast<std::size_t>(Beams)> read_ring(Ring<Beams> const& ring
   return ranges;
 }
 
-// What a loop without a ranger is told: the nearest discs within the vehicle's sight, in the world's frame.
+// What a loop without a ranger is told: the nearest discs within the vehicle's sight, in the world's frame, with the
+// vehicle's errors.
 template <PlainNumber S, int Capacity>
 MovingDiscSet<S, Capacity> nearest_discs(World const& world, Vehicle const& vehicle, Pose<double> const& pose,
-                                         double time) {
+                                         double time, Draws const& draws, std::uint32_t tick) {
   MovingDiscSet<S, Capacity> discs;
-  for (WorldDisc const& d : world.discs) {
-    Disc<double> const now = World::at(d, time);
-    if (v0::gap(now, pose.position) <= vehicle.sight) {
-      discs.add({now.centre.cast<S>(), static_cast<S>(now.radius)}, d.velocity.cast<S>(), pose.position.cast<S>());
+  bool const errs = vehicle.disc_noise > 0.0 || vehicle.radius_noise > 0.0 || vehicle.disc_dropout > 0.0;
+  for (std::uint32_t i = 0; i < world.discs.size(); ++i) {
+    WorldDisc const& d = world.discs[i];
+    Disc<double> now = World::at(d, time);
+    if (!(v0::gap(now, pose.position) <= vehicle.sight)) {
+      continue;
     }
+    if (errs) {
+      // A disc has four addresses of its own: dropout, two coordinates, radius.
+      if (draws.uniform({of_told, tick, 4 * i}) < vehicle.disc_dropout) {
+        continue;
+      }
+      now.centre += vehicle.disc_noise *
+                    Vec2<double>{draws.normal({of_told, tick, 4 * i + 1}), draws.normal({of_told, tick, 4 * i + 2})};
+      double const off = draws.between(-1.0, 1.0, {of_told, tick, 4 * i + 3});
+      now.radius = std::max(0.0, now.radius + vehicle.radius_noise * off);
+    }
+    discs.add({now.centre.cast<S>(), static_cast<S>(now.radius)}, d.velocity.cast<S>(), pose.position.cast<S>());
   }
   return discs;
 }
+
+// By what share of its nominal radius each wheel rolls, and the body turns, in one run.
+struct Built {
+  WheelRates<double> wheels{1.0, 1.0};
+  double turning = 1.0;
+
+  Built(Vehicle const& vehicle, Draws const& draws)
+      : wheels{1.0 + vehicle.wheel_spread * draws.between(-1.0, 1.0, {of_spread, 0, 0}),
+               1.0 + vehicle.wheel_spread * draws.between(-1.0, 1.0, {of_spread, 0, 1})},
+        turning(1.0 / (1.0 + vehicle.track_spread * draws.between(-1.0, 1.0, {of_spread, 0, 2}))) {}
+
+  // What is left of that in a tick: each wheel loses up to the vehicle's slip.
+  [[nodiscard]] WheelRates<double> grip(Vehicle const& vehicle, Draws const& draws, std::uint32_t tick) const {
+    return {wheels.left * (1.0 - vehicle.slip * draws.uniform({of_slip, tick, 0})),
+            wheels.right * (1.0 - vehicle.slip * draws.uniform({of_slip, tick, 1}))};
+  }
+};
 
 // The wheels: they answer late, and speed up only so fast.
 class Wheels {
@@ -166,10 +207,10 @@ inline constexpr int discs_told = 24;  ///< that a loop without a ranger is told
 /// the ranger is read (noise, dropouts), the loop decides, and the wheels follow after the vehicle's latency with its
 /// acceleration; the body moves along exact arcs of at most 5 ms, over each of which the wheel rates are held at their
 /// mean. Contact and clearance are taken over whole arcs. A moving disc is held still, where it is in the middle of the
-/// arc. A loop without a ranger is told the nearest `discs_told` discs within the vehicle's sight, as they are and as
-/// they move. A mishap, if there is one, meddles with what the loop is told and with its wheels. The same arguments
-/// give the same run: `seed` and `run_number` choose the noise. The vehicle's period must be over 0 and its jitter
-/// under 1.
+/// arc. A loop without a ranger is told the nearest `discs_told` discs within the vehicle's sight, as they move, and as
+/// they are but for the vehicle's errors. A mishap, if there is one, meddles with what the loop is told and with its
+/// wheels. The same arguments give the same run: `seed` and `run_number` choose the noise. The vehicle's period must be
+/// over 0 and its jitter under 1.
 template <PlainNumber S = float, typename Loop>
 [[nodiscard]] Run simulate(Loop const& loop, Vehicle const& vehicle, World const& world, Trip const& trip,
                            std::uint64_t seed, std::uint64_t run_number = 0, bool keep_ticks = false,
@@ -180,12 +221,14 @@ template <PlainNumber S = float, typename Loop>
   Draws const draws(seed, run_number);
   memory_t<Loop, S> memory;
   detail::Wheels wheels(vehicle);
+  detail::Built const built(vehicle, draws);
   Pose<double> pose = trip.start;
   std::vector<Disc<double>> near;
   double last_switch = -std::numeric_limits<double>::infinity();
   std::uint32_t modes = 0;
   double dt = vehicle.period;
-  double const fastest = static_cast<double>(vehicle.drive.wheel_radius) * static_cast<double>(vehicle.drive.max_rate);
+  double const fastest = static_cast<double>(vehicle.drive.wheel_radius) * static_cast<double>(vehicle.drive.max_rate) *
+                         (1.0 + vehicle.wheel_spread);
   bool const moving = std::any_of(world.discs.begin(), world.discs.end(),
                                   [](WorldDisc const& d) { return d.velocity.squaredNorm() > 0.0; });
   // Into `near`, the discs that can be the nearest one on the next `way` metres from here: another one stays farther.
@@ -209,9 +252,11 @@ template <PlainNumber S = float, typename Loop>
     }
     Command<S> const command = [&] {
       if constexpr (std::is_same_v<decltype(loop.sensing), no_sensing>) {
-        return loop.tick(now, detail::nearest_discs<S, discs_told>(world, vehicle, pose, run.time), memory);
+        return loop.tick(now, detail::nearest_discs<S, discs_told>(world, vehicle, pose, run.time, draws, tick),
+                         memory);
       } else {
-        auto ranges = detail::read_ring<S>(loop.sensing, vehicle, world, pose, run.time, draws, tick, near);
+        auto ranges =
+            detail::read_ring<S>(detail::ranger_of(loop.sensing), vehicle, world, pose, run.time, draws, tick, near);
         if (mishap != nullptr) {
           mishap->readings(moment, ranges);
         }
@@ -253,13 +298,16 @@ template <PlainNumber S = float, typename Loop>
     int const steps = static_cast<int>(std::ceil(dt / finest));
     double const step = dt / steps;
     look_near(run.time, fastest * dt);
+    WheelRates<double> const grip = built.grip(vehicle, draws, tick);
     for (int i = 0; i < steps; ++i) {
       double const time = run.time + i * step;
       WheelRates<double> rates = wheels.turn(time, step);
       if (mishap != nullptr) {
         mishap->wheels(time, rates);
       }
-      BodyVelocity<double> const body = vehicle.drive.body(rates);
+      BodyVelocity<double> body =
+          vehicle.drive.body(WheelRates<double>{rates.left * grip.left, rates.right * grip.right});
+      body.turn_rate *= built.turning;
       if (moving) {
         look_near(time + 0.5 * step, fastest * step);
       }

@@ -12,4 +12,12 @@ struct BodyVelocity {
   S turn_rate{S(0.0F)};  ///< radians a second, counter-clockwise positive
 };
 
+/// Motion of a body that can also go sideways, of its centre.
+template <Number S>
+struct PlanarVelocity {
+  S speed{S(0.0F)};      ///< metres a second, forward positive
+  S lateral{S(0.0F)};    ///< metres a second, to the left positive
+  S turn_rate{S(0.0F)};  ///< radians a second, counter-clockwise positive
+};
+
 }  // namespace wend::inline v0

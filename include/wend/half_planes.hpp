@@ -1,4 +1,4 @@
-// wend/fields/half_planes.hpp - the point of a disc that lies nearest to a wish and in every half-plane; or, where
+// wend/half_planes.hpp - the point of a disc that lies nearest to a wish and in every half-plane; or, where
 // there is none, the point that breaks the half-planes least.
 #pragma once
 

@@ -9,8 +9,8 @@
 
 #include <doctest/doctest.h>
 
-#include "../numbers.hpp"
-#include "wend/fields/half_planes.hpp"
+#include "numbers.hpp"
+#include "wend/half_planes.hpp"
 #include "wend/lab/interval.hpp"
 
 namespace {

@@ -1,0 +1,67 @@
+// Null-space priority: Antonelli, Arrichiello and Chiaverini (2008), The null-space-based behavioral control for
+// autonomous robotic systems, Intelligent Service Robotics 1:27-39 (from memory): v = v1 + (I - J^+ J) v2, with the
+// pseudo-inverse here by Eigen's complete orthogonal decomposition.
+#include <cmath>
+#include <random>
+
+#include <doctest/doctest.h>
+#include <Eigen/Core>
+#include <Eigen/QR>
+
+#include "../scenes.hpp"
+#include "wend/arbiters/null_space.hpp"
+
+namespace {
+
+// A field that is told what to want.
+struct told {
+  wend::Parameter x;
+  wend::Parameter y;
+  wend::Parameter confidence;
+  template <wend::Number S, int N>
+  [[nodiscard]] constexpr wend::Course<S> operator()(wend::Percept<S, N> const&) const noexcept {
+    return wend::course_along(wend::Vec2<S>(S(x), S(y)), S(confidence));
+  }
+};
+
+wend::Vec2<double> velocity(wend::Course<double> const& course) { return course.direction * course.confidence; }
+
+}  // namespace
+
+TEST_CASE("null_space is v1 + (I - J^+ J) v2, as far as a confidence goes") {
+  std::mt19937 random(5);
+  std::uniform_real_distribution<float> any(-1.0F, 1.0F);
+  std::uniform_real_distribution<float> sure(0.05F, 0.65F);  // lengths of two that are across stay under 1
+  scenes::Scene<double> const scene;
+  for (int k = 0; k < 1000; ++k) {
+    told const first{any(random), any(random), sure(random)};
+    told const second{any(random), any(random), sure(random)};
+    wend::Vec2<double> const v1 = velocity(scenes::answer(first, scene));
+    wend::Vec2<double> const v2 = velocity(scenes::answer(second, scene));
+    Eigen::Matrix<double, 1, 2> const jacobian = v1.normalized().transpose();
+    Eigen::Matrix2d const null = Eigen::Matrix2d::Identity() -
+                                 jacobian.completeOrthogonalDecomposition().pseudoInverse() * jacobian;
+    wend::Vec2<double> const expected = v1 + null * v2;
+    wend::Vec2<double> const found = velocity(scenes::answer(wend::null_space(first, second), scene));
+    CHECK((found - expected).norm() < 1.0e-12);
+    // The primary task is done at the same rate, whatever the second wants.
+    CHECK(found.dot(v1.normalized()) == doctest::Approx(v1.norm()).epsilon(1.0e-12));
+  }
+}
+
+TEST_CASE("the second is heard alone where the first has no opinion, and not at all where it is exactly opposed") {
+  scenes::Scene<double> const scene;
+  told const none{0.0F, 0.0F, 1.0F};
+  told const east{1.0F, 0.0F, 0.75F};
+  told const west{-1.0F, 0.0F, 0.5F};
+  CHECK(velocity(scenes::answer(wend::null_space(none, west), scene)).x() == -0.5);
+  CHECK(velocity(scenes::answer(wend::null_space(east, west), scene)).x() == 0.75);
+  CHECK(velocity(scenes::answer(wend::null_space(east, east), scene)).x() == 0.75);
+  CHECK(scenes::answer(wend::null_space(none, none), scene).confidence == 0.0);
+  // Of three, the third has only what the two leave: in the plane nothing, where both have opinions that differ.
+  told const north{0.0F, 1.0F, 0.5F};
+  wend::Vec2<double> const two = velocity(scenes::answer(wend::null_space(east, north), scene));
+  wend::Vec2<double> const three =
+      velocity(scenes::answer(wend::null_space(east, north, told{-1.0F, -1.0F, 0.5F}), scene));
+  CHECK((two - three).norm() < 1e-12);
+}
