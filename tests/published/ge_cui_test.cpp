@@ -99,3 +99,79 @@ TEST_CASE("downhill ends on a goal that is out of the influence of every disc") 
     CHECK(scenes::answer(field, scene).confidence == 0.0);
   }
 }
+
+// --- Their cure: repulsion weighted with d^n
+// ---------------------------------------------------------------------------
+
+namespace {
+
+constexpr wend::potential_field weighted(int power) {
+  wend::potential_field cured = field;
+  cured.goal_power = power;
+  return cured;
+}
+
+// Their eq. 7 with the quadratic attraction, written out by itself.
+double weighted_potential(wend::Vec2<double> const& x, double disc_x, int power) {
+  double const rho = std::hypot(x.x() - disc_x, x.y()) - disc_radius - robot_radius;
+  double const excess = rho <= 0.75 ? 1.0 / rho - 1.0 / 0.75 : 0.0;
+  double const d = std::hypot(x.x(), x.y());
+  return 0.5 * d * d + 0.0625 / 2.0 * excess * excess * std::pow(d, power);
+}
+
+}  // namespace
+
+TEST_CASE("the weighted force is the slope of Ge and Cui's potential") {
+  for (int const power : {1, 2, 3, 4}) {
+    for (int k = 0; k < 200; ++k) {
+      scenes::Scene<double> scene = goal_before_a_disc(0.3);
+      double const angle = 0.31 * k;
+      double const r = 0.1 + 0.004 * k;
+      scene.pose.position = {r * std::cos(angle), r * std::sin(angle)};
+      double const disc_x = scene.discs[0].centre.x();
+      if (std::hypot(scene.pose.position.x() - disc_x, scene.pose.position.y()) - 0.75 < 0.02) {
+        continue;
+      }
+      wend::Vec2<double> const force = weighted(power).force(scene.percept()).sum;
+      double const h = 1e-6;
+      auto const at = [&](double dx, double dy) {
+        return weighted_potential({scene.pose.position.x() + dx, scene.pose.position.y() + dy}, disc_x, power);
+      };
+      wend::Vec2<double> const slope{(at(h, 0) - at(-h, 0)) / (2 * h), (at(0, h) - at(0, -h)) / (2 * h)};
+      CHECK((force + slope).norm() < 1e-6 * std::max(1.0, slope.norm()));
+    }
+  }
+}
+
+TEST_CASE("with the distance to the goal as a weight, downhill ends on the goal, however near a disc it stands") {
+  for (double const clearance : {0.1, 0.3, 0.5}) {
+    scenes::Scene<double> scene = goal_before_a_disc(clearance);
+    for (wend::Vec2<double> const& from : {wend::Vec2<double>{-2.0, 0.3}, wend::Vec2<double>{-0.5, -1.5}}) {
+      scene.pose.position = from;
+      for (int i = 0; i < 40000; ++i) {
+        wend::Vec2<double> const force = weighted(2).force(scene.percept()).sum;
+        scene.pose.position += force * std::min(0.002, 0.002 / (wend::length(force) + 1.0e-300));
+      }
+      CHECK(wend::length(scene.pose.position) < 1.0e-3);
+    }
+    // And around the goal everything lies higher than it.
+    double const disc_x = scene.discs[0].centre.x();
+    for (double angle = 0.0; angle < 6.3; angle += 0.1) {
+      CHECK(weighted_potential({0.05 * std::cos(angle), 0.05 * std::sin(angle)}, disc_x, 2) > 0.0);
+    }
+  }
+}
+
+TEST_CASE("beyond its distance a conic attraction pulls no harder, and joins the quadratic one without a step") {
+  wend::potential_field conic = field;
+  conic.conic_beyond = 1.5F;
+  auto const pull = [&conic](double distance) {
+    scenes::Scene<double> scene;
+    scene.goal = {distance, 0.0};
+    return conic.force(scene.percept()).sum.x();
+  };
+  CHECK(pull(0.5) == 0.5);
+  CHECK(pull(1.5) == 1.5);
+  CHECK(pull(1.5 + 1e-12) == doctest::Approx(1.5).epsilon(1e-11));
+  CHECK(pull(20.0) == 1.5);
+}

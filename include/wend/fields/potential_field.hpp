@@ -9,11 +9,20 @@ namespace wend::inline v0 {
 /// U = attraction/2 * d^2, and each disc nearer than `influence` repels with U = repulsion/2 * (1/rho - 1/influence)^2
 /// (his FIRAS function), rho being the clearance from the robot's edge. Its known faults are part of it: it comes to
 /// rest where the two cancel (a goal straight behind a disc), and it cannot reach a goal that stands too near a disc.
+///
+/// With `goal_power` n over 0 the repulsion is weighted by the distance d to the goal,
+/// U = repulsion/2 * (1/rho - 1/influence)^2 * d^n (Ge and Cui 2000, IEEE Trans. Robotics and Automation 16(5), eq. 7):
+/// it fades on the way there, so that the goal is the lowest place however near a disc it stands. The traps behind
+/// discs stay. With `conic_beyond` the attraction is a cone from that distance on, attraction * conic_beyond * (d -
+/// conic_beyond / 2), and quadratic within (the usual combination: Latombe 1991, Robot Motion Planning, chapter 7): far
+/// from the goal the pull grows no further, and a disc is felt as much as near it.
 struct potential_field {
-  Parameter attraction = 1.0F;        ///< newton a metre, if you think of it as a force
-  Parameter repulsion = 0.05F;        ///< newton square metre
-  Parameter influence = 1.0F;         ///< metres: beyond, a disc is not felt
-  Parameter closest = 0.01F;          ///< metres: clearance below which the repulsion grows no further
+  Parameter attraction = 1.0F;  ///< newton a metre, if you think of it as a force
+  Parameter repulsion = 0.05F;  ///< newton square metre
+  Parameter influence = 1.0F;  ///< metres: beyond, a disc is not felt
+  Parameter closest = 0.01F;  ///< metres: clearance below which the repulsion grows no further
+  int goal_power = 0;  ///< Ge and Cui's n, from 0 (Khatib) to 4; 2 leaves no jerk on the goal
+  Parameter conic_beyond = far_away;  ///< metres from the goal, over 0
 
   /// The sum of the forces, and the sum of their sizes.
   template <Number S>
@@ -22,11 +31,19 @@ struct potential_field {
     S sum_of_sizes;
   };
 
-  /// -grad U (Khatib's eq. 10 and 17). Towards the goal -attraction * (x - goal); away from a disc
-  /// repulsion * (1/rho - 1/influence) / rho^2.
+  /// -grad U (Khatib's eq. 10 and 17; Ge and Cui's eq. 9 to 11). Towards the goal -attraction * (x - goal); away from a
+  /// disc repulsion * (1/rho - 1/influence) / rho^2 * d^n; and towards the goal once more
+  /// n/2 * repulsion * (1/rho - 1/influence)^2 * d^(n-1).
   template <Number S, int N>
   [[nodiscard]] constexpr Force<S> force(Percept<S, N> const& percept) const noexcept {
-    S const pull = S(attraction) * percept.goal_distance;
+    S const distance = percept.goal_distance;
+    S const pull = S(attraction) * select(distance > S(conic_beyond), S(conic_beyond), distance);
+    S weight = S(1.0F);  // d^n
+    S slope = S(0.0F);  // n d^(n-1)
+    for (int i = 0; i < goal_power && i < 4; ++i) {
+      slope = slope * distance + weight;
+      weight = weight * distance;
+    }
     // Divided in S: the quotient of two Parameters would leave a push at the edge of the influence in double.
     S const edge = S(1.0F) / S(influence);
     Force<S> total{scaled(percept.goal_direction, pull), pull};
@@ -34,9 +51,16 @@ struct potential_field {
       Polar<S> const away = polar(Vec2<S>(percept.pose.position - disc.centre));
       S const rho = greatest(S(away.length - disc.radius - percept.robot_radius), S(closest));
       S const push = S(repulsion) * (S(1.0F) / rho - edge) / squared(rho);
-      S const felt = select(rho < S(influence), push, S(0.0F));
+      S const near = select(rho < S(influence), push, S(0.0F));
+      S const felt = goal_power > 0 ? S(near * weight) : near;
       total.sum = total.sum + scaled(away.direction, felt);
       total.sum_of_sizes = total.sum_of_sizes + felt;
+      if (goal_power > 0) {
+        S const excess = select(rho < S(influence), S(S(1.0F) / rho - edge), S(0.0F));
+        S const homeward = S(0.5F) * S(repulsion) * squared(excess) * slope;
+        total.sum = total.sum + scaled(percept.goal_direction, homeward);
+        total.sum_of_sizes = total.sum_of_sizes + homeward;
+      }
     }
     return total;
   }
