@@ -35,8 +35,8 @@ struct attractor_dynamics {
     for (Disc<S> const& disc : percept.discs) {
       Polar<S> const to_disc = polar(Vec2<S>(disc.centre - percept.pose.position));
       S const contact = disc.radius + percept.robot_radius;
-      S const clearance = greatest(S(to_disc.length - contact), S(0.0F));
-      S const push = S(repulsion) * falling(S(clearance / S(fade)));
+      S const room = greatest(S(to_disc.length - contact), S(0.0F));
+      S const push = S(repulsion) * falling(S(room / S(fade)));
       // No more than 1: a disc that is touched covers half of all directions.
       S const width = least(S((contact + S(margin)) / to_disc.length), S(1.0F));
       S const off = greatest(S(S(1.0F) - dot(to_disc.direction, nose)), S(0.0F));
