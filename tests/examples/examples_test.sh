@@ -8,6 +8,7 @@ if [ $# -ne 2 ] || [ ! -x "$1/review" ] || [ ! -x "$1/replay" ] || [ ! -f "$2/sp
 fi
 programs=$(cd "$1" && pwd)
 data=$(cd "$2" && pwd)
+expected=$(cd "$(dirname "$0")/expected" && pwd)
 work=$(mktemp -d) || exit 2
 trap 'rm -rf "$work"' EXIT
 trap 'exit 2' HUP INT TERM
@@ -166,6 +167,20 @@ check 'refused options: nothing is written' is_absent review-out
 run review --help
 check 'review --help: usage on stdout, exit code 0' sh -c '[ "$1" -eq 0 ] && grep -q "^usage: review" stdout' - "$code"
 
+# --- The small ones: their output is known, to the letter. -------------------------------------------------------------
+
+for name in quickstart own_field own_guard ranges_to_wheels; do
+  run $name
+  check "$name: exit code 0" ended_with 0
+  check "$name: prints what it has to" cmp -s stdout "$expected/$name.txt"
+done
+if [ -x "$programs/unit_test" ]; then # where there is doctest
+  run unit_test
+  check 'unit_test: its tests pass' ended_with 0
+  sed -n '/^World/,/^simulate/p' stdout >scene
+  check 'unit_test: shows the failing scene as code' cmp -s scene "$expected/unit_test.txt"
+fi
+
 # --- compare: every method through the same scenes. -------------------------------------------------------------------
 
 run compare --runs 2
@@ -258,6 +273,64 @@ refuses 'replay with half a goal' "expected --goal X,Y in metres, found '1'" rep
 refuses 'replay --every 0' "expected --every with a whole number from 1, found '0'" replay --every 0 small.csv
 refuses 'replay --every 1.5' "found '1.5'" replay --every 1.5 small.csv
 refuses 'replay with a negative reach' "expected a length in metres over 0, found '-6'" replay --reach -6 small.csv
+
+# --- replay: dumps of a decision log. ---------------------------------------------------------------------------------
+
+for policy in hard-switch two-thresholds blend composed; do
+  for as in '' --as-discs; do
+    what="replay: a dump of $policy${as:+, $as}"
+    run replay --policy "$policy" --every 1000 --dump-to run.dump $as "$data/spruces-run.csv"
+    check "$what: is written" prints "^The last $rows decisions are in run.dump, [0-9]+ bytes each\$"
+    run replay --dump run.dump --brief
+    check "$what: exit code 0" ended_with 0
+    check "$what: is taken for what it is" prints "^run.dump: $rows decisions of the policy '$policy', from tick 0\$"
+    check "$what: falls the same" prints "^$rows of $rows decisions fall as they were logged, bit by bit\$"
+  done
+done
+run replay --every 1000 --as-discs --dump-to run.dump "$data/spruces-run.csv"
+size=$(awk '/^The last/ { print $(NF - 2) }' stdout)
+check 'replay --dump-to: the file is a header of 38 bytes and the records' are_equal $((38 + rows * size)) \
+  "$(($(wc -c <run.dump)))"
+# gzip ends its output with the CRC-32 of what went in and its size (RFC 1952, section 2.3.1).
+crc() { gzip -c | tail -c 8 | head -c 4 | od -An -tx1; }
+check "replay --dump-to: the header's checksum is that of gzip" are_equal "$(head -c 34 run.dump | crc)" \
+  "$(head -c 38 run.dump | tail -c 4 | od -An -tx1)"
+check "replay --dump-to: the first record's checksum is that of gzip" are_equal \
+  "$(head -c $((38 + size - 4)) run.dump | tail -c +39 | crc)" \
+  "$(head -c $((38 + size)) run.dump | tail -c 4 | od -An -tx1)"
+
+run replay --dump run.dump --every 100
+check 'replay --dump: explains every 100th' are_equal $(((rows + 99) / 100)) "$(grep -c '^tick ' stdout)"
+check 'replay --dump: says which guard' prints '^ +other: (turns|stays) (on|off), disc_before_goal -?[0-9.]+ is '
+check 'replay --dump: says which weight' prints '^    weight [0-9.]+: guarded, (goes|stays) (in|out)side -> '
+check 'replay --dump: says what the speed is for' prints '^  pace: [0-9.]+ m/s allowed, '
+
+# damaged <what> <good records> <message>: cut.dump is read up to there, and then refused with the record's number.
+damaged() {
+  run replay --dump cut.dump --brief
+  check "replay, $1: exit code 2" ended_with 2
+  check "replay, $1: the good records are decided" prints "^$2 of $2 decisions fall as they were logged"
+  check "replay, $1: says '$3'" says "replay: cut.dump: $3"
+}
+head -c $((38 + 3 * size + 10)) run.dump >cut.dump
+damaged 'a dump cut short' 3 "record 4 of $rows (tick 3) is cut short: expected $size bytes, found 10"
+head -c $((38 + 5 * size + 50)) run.dump >cut.dump
+printf '\377\176\177' >>cut.dump
+tail -c +$((38 + 5 * size + 54)) run.dump >>cut.dump
+damaged 'a changed dump' 5 "record 6 of $rows (tick 5) is damaged: its checksum is not that of its bytes"
+head -c 20 run.dump >cut.dump
+refuses 'a dump cut short in its header' 'replay: cut.dump: the dump ends within its header' replay --dump cut.dump
+refuses 'a dump of another policy' 'replay: run.dump: expected ' replay --dump run.dump --policy two-thresholds
+refuses 'a table for a dump' "replay: small.csv: expected a dump of decisions, which begins with 'wendlog'" \
+  replay --dump small.csv
+refuses 'a dump that is not there' 'replay: nowhere.dump: expected a file that can be read' replay --dump nowhere.dump
+run replay --every 1000 --dump-to run.dump "$data/spruces-run.csv"
+refuses 'a dump of another ranger' 'was decided with other parameters' replay --dump run.dump --noise 0.02
+refuses 'replay of a dump and a table' 'usage: replay' replay --dump run.dump small.csv
+refuses 'replay --brief of a table' 'usage: replay' replay --brief small.csv
+refuses 'replay --as-discs without a dump' 'usage: replay' replay --as-discs small.csv
+refuses 'replay with an unknown policy' "expected --policy hard-switch, two-thresholds, blend or composed, found 'bold'" \
+  replay --policy bold small.csv
 
 [ "$failed" -eq 0 ] || echo 'examples: a check failed'
 exit "$failed"
