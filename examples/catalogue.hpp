@@ -43,6 +43,8 @@ inline constexpr std::tuple all{
     named("past_disc", past_disc{}),
     named("potential_field", potential_field{}),
     named("potential_field, weighted", weighted),
+    named("harmonic_flow", harmonic_flow{}),
+    placed("navigation_function", navigation_function{.centre_x = 4.0F, .centre_y = 0.0F, .radius = 8.0F}),
     named("along_boundary", along_boundary{}),
     placed("along_path", along_path{route}),
     placed("onto_path", onto_path{route}),

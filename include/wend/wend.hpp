@@ -20,6 +20,8 @@
 #include "wend/fields/attractor_dynamics.hpp"
 #include "wend/fields/away_from_discs.hpp"
 #include "wend/fields/between_walls.hpp"
+#include "wend/fields/harmonic_flow.hpp"
+#include "wend/fields/navigation_function.hpp"
 #include "wend/fields/past_disc.hpp"
 #include "wend/fields/potential_field.hpp"
 #include "wend/fields/roam.hpp"

@@ -187,7 +187,7 @@ run compare --runs 2
 check 'compare: exit code 0' ended_with 0
 check 'compare: says nothing on stderr' sh -c '[ ! -s stderr ]'
 check 'compare: five scenes' are_equal 5 "$(grep -cE '^(open|disc|trap|passage|crossers): ' stdout)"
-check 'compare: goes to the goal where nothing stands' prints '^toward_goal +2/2 +0 +1\.00 +- '
+check 'compare: goes to the goal where nothing stands' prints '^toward_goal +2/2 +0 +0 +1\.00 +- '
 check 'compare: a potential stays in the trap' sh -c 'sed -n "/^trap/,/^passage/p" stdout | grep -qE "^potential_field +0/2 "'
 cp stdout first
 run compare --runs 2
