@@ -10,7 +10,9 @@
 #include <math.h>
 #include <stdbool.h>
 
-enum { HAND_DISCS = 8 };
+#ifndef HAND_DISCS
+#define HAND_DISCS 8 /* room for so many */
+#endif
 
 /* Metres; one frame. */
 struct hand_disc {
@@ -34,36 +36,56 @@ struct hand_memory {
 struct hand_course {
   float x, y;
   float confidence;
+  float speed_share; /* of the speed that is allowed: this decision wants all of it */
 };
 
 static inline struct hand_course hand_decide(const struct hand_scene* scene, struct hand_memory* memory) {
-  const float far_away = 1.0e6F;
+  const float far_away = 1.0e6F;    /* as if there were none */
+  const float no_length = 1.1e-19F; /* nor any direction: its square loses digits */
   const float enter = 0.30F;
   const float leave = 0.50F;
   const float low = 0.5F;
   const float high = 1.2F;
-  struct hand_course course = {0.0F, 0.0F, 0.0F};
+  struct hand_course course = {0.0F, 0.0F, 0.0F, 1.0F};
 
   float least_gap = far_away;
-  float nearest_x = far_away;
-  float nearest_y = 0.0F;
-  for (int i = 0; i < scene->disc_count; ++i) {
-    const struct hand_disc* disc = &scene->discs[i];
+  float away_x = 0.0F;
+  float away_y = 0.0F;
+  float away_length = 0.0F;
+  const struct hand_disc* const end = scene->discs + scene->disc_count;
+#ifndef HAND_LOOKS_TWICE /* what was worked out for the nearest disc is kept */
+  for (const struct hand_disc* disc = scene->discs; disc != end; ++disc) {
+    const float dx = scene->x - disc->x;
+    const float dy = scene->y - disc->y;
+    const float distance = sqrtf(dx * dx + dy * dy);
+    const float gap = distance - disc->radius;
+    if (gap < least_gap) {
+      least_gap = gap;
+      away_x = dx;
+      away_y = dy;
+      away_length = distance;
+    }
+  }
+#else /* plainly: first which disc is nearest, then the way to it; slower on most machines */
+  const struct hand_disc* nearest = 0;
+  for (const struct hand_disc* disc = scene->discs; disc != end; ++disc) {
     const float dx = scene->x - disc->x;
     const float dy = scene->y - disc->y;
     const float gap = sqrtf(dx * dx + dy * dy) - disc->radius;
     if (gap < least_gap) {
       least_gap = gap;
-      nearest_x = disc->x;
-      nearest_y = disc->y;
+      nearest = disc;
     }
   }
+  if (nearest) {
+    away_x = scene->x - nearest->x;
+    away_y = scene->y - nearest->y;
+    away_length = sqrtf(away_x * away_x + away_y * away_y);
+  }
+#endif
   const float clearance = least_gap - scene->robot_radius;
 
-  float away_x = scene->x - nearest_x;
-  float away_y = scene->y - nearest_y;
-  const float away_length = sqrtf(away_x * away_x + away_y * away_y);
-  const bool some_disc = clearance < 0.5F * far_away && away_length > 0.0F;
+  const bool some_disc = least_gap < 0.5F * far_away && away_length > no_length;
   if (some_disc) {
     const float scale = 1.0F / away_length;
     away_x *= scale;
@@ -73,10 +95,14 @@ static inline struct hand_course hand_decide(const struct hand_scene* scene, str
   float goal_x = scene->goal_x - scene->x;
   float goal_y = scene->goal_y - scene->y;
   const float goal_distance = sqrtf(goal_x * goal_x + goal_y * goal_y);
-  if (goal_distance > 0.0F) {
+  const bool some_goal = goal_distance > no_length && goal_distance < far_away;
+  if (some_goal) {
     const float scale = 1.0F / goal_distance;
     goal_x *= scale;
     goal_y *= scale;
+  } else { /* it may be no number */
+    goal_x = 0.0F;
+    goal_y = 0.0F;
   }
 
   const bool passing = clearance < enter || (memory->passing && !(clearance > leave));
@@ -105,12 +131,15 @@ static inline struct hand_course hand_decide(const struct hand_scene* scene, str
   float weight = (clearance - low) * (1.0F / (high - low));
   weight = weight > 0.0F ? weight : 0.0F;
   weight = weight < 1.0F ? weight : 1.0F;
-  const float of_away = some_disc ? 1.0F - weight : 0.0F;
-  const float of_goal = goal_distance > 0.0F ? weight : 0.0F;
-  const float x = of_away * away_x + of_goal * goal_x;
-  const float y = of_away * away_y + of_goal * goal_y;
+  float x = weight * goal_x;
+  float y = weight * goal_y;
+  if (some_disc) {
+    const float of_away = 1.0F - weight;
+    x = of_away * away_x + x;
+    y = of_away * away_y + y;
+  }
   const float length = sqrtf(x * x + y * y);
-  if (length > 0.0F) {
+  if (length > no_length) {
     const float scale = 1.0F / length;
     course.x = x * scale;
     course.y = y * scale;

@@ -4,9 +4,10 @@
 #
 #   sh cmake/setup.sh                   everything: also doctest and Google Benchmark
 #   setup_for=demo sh cmake/setup.sh    what the demo needs: compiler, CMake, Ninja, Eigen
+#   setup_for=firmware sh cmake/setup.sh   that, and cross compilers for Arm and RISC-V with their C libraries, and QEMU
 #
-# demo.sh and test.sh source it, so that they get CXX, the compiler that was found (a CXX that is set already is kept),
-# and CMAKE_GENERATOR. Homebrew, apt-get, dnf and pacman are known.
+# demo.sh, test.sh and firmware.sh source it, so that they get CXX, the compiler that was found (a CXX that is set
+# already is kept), and CMAKE_GENERATOR. Homebrew, apt-get, dnf and pacman are known.
 set -eu
 
 # g++ 12 or clang++ 14, with a standard library of C++20.
@@ -60,16 +61,32 @@ has_header() {
   return 1
 }
 
+# A cross compiler, and the headers it has to find.
+has_cross() {
+  cross=$1
+  shift
+  printf '#include <%s>\n' "$@" | $cross -std=c++20 -fsyntax-only -x c++ - >/dev/null 2>&1
+}
+
 find_missing() {
   missing=
   find_compiler || missing="$missing compiler"
   has_cmake || missing="$missing cmake"
   has_ninja || missing="$missing ninja"
   has_header eigen3/Eigen/src/Core/Reshaped.h || missing="$missing eigen"  # this file is new in Eigen 3.4
-  if [ "${setup_for:-tests}" != demo ]; then
-    has_header doctest/doctest.h || missing="$missing doctest"
-    has_header benchmark/benchmark.h || missing="$missing benchmark"
-  fi
+  case ${setup_for:-tests} in
+    demo) ;;
+    firmware)
+      has_cross arm-none-eabi-g++ bit math.h || missing="$missing arm"
+      has_cross 'riscv64-unknown-elf-g++ --specs=picolibc.specs' math.h || missing="$missing riscv"
+      command -v qemu-system-arm >/dev/null || missing="$missing qemu-arm"
+      command -v qemu-system-riscv32 >/dev/null || missing="$missing qemu-riscv"
+      ;;
+    *)
+      has_header doctest/doctest.h || missing="$missing doctest"
+      has_header benchmark/benchmark.h || missing="$missing benchmark"
+      ;;
+  esac
 }
 
 give_up() {
@@ -82,6 +99,10 @@ give_up() {
       eigen) echo "  - Eigen 3.4 or later, headers under <prefix>/include/eigen3 (CMAKE_PREFIX_PATH names prefixes)" ;;
       doctest) echo "  - doctest, header <prefix>/include/doctest/doctest.h (for the tests only)" ;;
       benchmark) echo "  - Google Benchmark (for the benchmarks only)" ;;
+      arm) echo "  - arm-none-eabi-g++ 12 or later, with newlib and its C++ headers" ;;
+      riscv) echo "  - riscv64-unknown-elf-g++ 12 or later, with picolibc" ;;
+      qemu-arm) echo "  - qemu-system-arm" ;;
+      qemu-riscv) echo "  - qemu-system-riscv32" ;;
     esac >&2
   done
   exit 2
@@ -104,6 +125,14 @@ package_names() {
       apt-get-eigen) echo libeigen3-dev ;;
       apt-get-doctest) echo doctest-dev ;;
       apt-get-benchmark) echo libbenchmark-dev ;;
+      apt-get-arm) echo gcc-arm-none-eabi libnewlib-arm-none-eabi libstdc++-arm-none-eabi-newlib ;;
+      apt-get-riscv) echo gcc-riscv64-unknown-elf picolibc-riscv64-unknown-elf ;;
+      apt-get-qemu-arm) echo qemu-system-arm ;;
+      apt-get-qemu-riscv) echo qemu-system-misc ;;
+      brew-qemu-*) echo qemu ;;
+      *-qemu-arm) echo qemu-system-arm ;;
+      *-qemu-riscv) echo qemu-system-riscv ;;
+      *-arm | *-riscv) ;; # no name that is known to bring all of it
       dnf-compiler) echo gcc-c++ ;;
       dnf-eigen) echo eigen3-devel ;;
       dnf-doctest) echo doctest-devel ;;

@@ -3,22 +3,17 @@
 //
 //   compare [--map STEMS.csv] [--runs N] [--markdown]
 #include <algorithm>
-#include <charconv>
 #include <cstdio>
-#include <cstring>
-#include <exception>
 #include <iterator>
 #include <limits>
 #include <string>
-#include <thread>
 #include <vector>
-
-#include <getopt.h>
 
 #include <wend/lab/svg.hpp>
 #include <wend/motion/pace.hpp>
 
 #include "../stand.hpp"
+#include "../table_options.hpp"
 #include "scenes.hpp"
 #include "slices.hpp"
 
@@ -32,11 +27,7 @@ constexpr char const* usage =
     "  --runs N         runs a method and scene, each with noise of its own, from 1 to 10000 (default: 20)\n"
     "  --markdown       prints the tables as Markdown\n";
 
-struct Options {
-  std::string map;
-  int runs = 20;
-  bool markdown = false;
-};
+using table::Options;
 
 /// What became of a method's runs through one scene.
 struct Row {
@@ -78,16 +69,7 @@ Row drive(compare::Entrant const& entrant, compare::Scene const& scene, int runs
 /// Every method through a scene; the methods are shared out among the machine's cores.
 std::vector<Row> drive_all(std::vector<compare::Entrant> const& entrants, compare::Scene const& scene, int runs) {
   std::vector<Row> rows(entrants.size());
-  std::size_t const threads = std::max(1U, std::thread::hardware_concurrency());
-  std::vector<std::jthread> crew;
-  for (std::size_t t = 0; t < threads; ++t) {
-    crew.emplace_back([&, t] {
-      for (std::size_t i = t; i < entrants.size(); i += threads) {
-        rows[i] = drive(entrants[i], scene, runs);
-      }
-    });
-  }
-  crew.clear();  // waits
+  table::share_out(entrants.size(), [&](std::size_t i) { rows[i] = drive(entrants[i], scene, runs); });
   return rows;
 }
 
@@ -146,43 +128,9 @@ int compare_all(Options const& options) {
   return 0;
 }
 
-bool read_count(char const* text, int& count) {
-  char const* const end = text + std::strlen(text);
-  auto const parsed = std::from_chars(text, end, count);
-  return parsed.ec == std::errc{} && parsed.ptr == end && count >= 1 && count <= 10000;
-}
-
 }  // namespace
 
 int main(int argc, char** argv) {
-  Options options;
-  option const known[] = {{"map", required_argument, nullptr, 'm'},
-                          {"runs", required_argument, nullptr, 'n'},
-                          {"markdown", no_argument, nullptr, 'd'},
-                          {"help", no_argument, nullptr, 'h'},
-                          {nullptr, 0, nullptr, 0}};
-  for (int given = 0; (given = getopt_long(argc, argv, "", known, nullptr)) != -1;) {
-    switch (given) {
-      case 'm': options.map = optarg; break;
-      case 'd': options.markdown = true; break;
-      case 'n':
-        if (!read_count(optarg, options.runs)) {
-          std::fprintf(stderr, "compare: --runs expects a whole number from 1 to 10000, found '%s'\n", optarg);
-          return 2;
-        }
-        break;
-      case 'h': std::fputs(usage, stdout); return 0;
-      default: std::fputs(usage, stderr); return 2;
-    }
-  }
-  if (optind != argc) {
-    std::fprintf(stderr, "compare: did not expect '%s'\n%s", argv[optind], usage);
-    return 2;
-  }
-  try {
-    return compare_all(options);
-  } catch (std::exception const& error) {
-    std::fprintf(stderr, "compare: %s\n", error.what());
-    return 2;
-  }
+  Options const options = table::read_options("compare", usage, argc, argv);
+  return table::run("compare", [&options] { return compare_all(options); });
 }

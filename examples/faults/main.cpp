@@ -2,17 +2,11 @@
 //
 //   faults [--map STEMS.csv] [--runs N] [--markdown]
 #include <algorithm>
-#include <charconv>
 #include <cstdio>
-#include <cstring>
-#include <exception>
 #include <limits>
 #include <map>
 #include <string>
-#include <thread>
 #include <vector>
-
-#include <getopt.h>
 
 #include <wend/lab/simulate.hpp>
 #include <wend/lab/svg.hpp>
@@ -20,6 +14,7 @@
 #include "../policies.hpp"
 #include "../review/cellar.hpp"
 #include "../stand.hpp"
+#include "../table_options.hpp"
 #include "faults.hpp"
 
 namespace {
@@ -32,11 +27,7 @@ constexpr char const* usage =
     "  --runs N         runs a fault, each with noise of its own, from 1 to 10000 (default: 20)\n"
     "  --markdown       prints the table as Markdown\n";
 
-struct Options {
-  std::string map;
-  int runs = 20;
-  bool markdown = false;
-};
+using table::Options;
 
 struct Scene {
   lab::World world;
@@ -161,16 +152,7 @@ int try_all(Options const& options) {
   for (int k = 0; k < options.runs; ++k) {
     usual.push_back(first_times(drive(all.front(), scene, k)));
   }
-  std::size_t const threads = std::max(1U, std::thread::hardware_concurrency());
-  std::vector<std::jthread> crew;
-  for (std::size_t t = 0; t < threads; ++t) {
-    crew.emplace_back([&, t] {
-      for (std::size_t i = t; i < all.size(); i += threads) {
-        outcomes[i] = suffer(all[i], scene, usual);
-      }
-    });
-  }
-  crew.clear();  // waits
+  table::share_out(all.size(), [&](std::size_t i) { outcomes[i] = suffer(all[i], scene, usual); });
   std::printf("A cart crosses %s, composed policy, %d runs a fault; each begins after %.0f s.\n\n",
               options.map.empty() ? "the cellar" : "the stand", options.runs, faults::onset);
   bool const survived = print(all, outcomes, options);
@@ -187,43 +169,9 @@ int try_all(Options const& options) {
   return 0;
 }
 
-bool read_count(char const* text, int& count) {
-  char const* const end = text + std::strlen(text);
-  auto const parsed = std::from_chars(text, end, count);
-  return parsed.ec == std::errc{} && parsed.ptr == end && count >= 1 && count <= 10000;
-}
-
 }  // namespace
 
 int main(int argc, char** argv) {
-  Options options;
-  option const known[] = {{"map", required_argument, nullptr, 'm'},
-                          {"runs", required_argument, nullptr, 'n'},
-                          {"markdown", no_argument, nullptr, 'd'},
-                          {"help", no_argument, nullptr, 'h'},
-                          {nullptr, 0, nullptr, 0}};
-  for (int given = 0; (given = getopt_long(argc, argv, "", known, nullptr)) != -1;) {
-    switch (given) {
-      case 'm': options.map = optarg; break;
-      case 'd': options.markdown = true; break;
-      case 'n':
-        if (!read_count(optarg, options.runs)) {
-          std::fprintf(stderr, "faults: --runs expects a whole number from 1 to 10000, found '%s'\n", optarg);
-          return 2;
-        }
-        break;
-      case 'h': std::fputs(usage, stdout); return 0;
-      default: std::fputs(usage, stderr); return 2;
-    }
-  }
-  if (optind != argc) {
-    std::fprintf(stderr, "faults: did not expect '%s'\n%s", argv[optind], usage);
-    return 2;
-  }
-  try {
-    return try_all(options);
-  } catch (std::exception const& error) {
-    std::fprintf(stderr, "faults: %s\n", error.what());
-    return 2;
-  }
+  Options const options = table::read_options("faults", usage, argc, argv);
+  return table::run("faults", [&options] { return try_all(options); });
 }

@@ -32,7 +32,7 @@ constexpr Ring<90> ring{.directions = even_bearings<90>(0.0, std::numbers::pi / 
                         .max_range = 6.0F,
                         .noise = 0.01F};
 
-constexpr Loop<toward_goal, Ring<90>> straight{.policy = {}, .sensing = ring};
+constexpr Loop<toward_goal, Ring<90>> to_goal{.policy = {}, .sensing = ring};
 
 // One that never brakes for a disc.
 constexpr Loop<toward_goal, Ring<90>> heedless{
@@ -110,18 +110,18 @@ TEST_CASE("a straight trip takes the time that top speed, acceleration and arriv
   for (double const metres : {2.0, 6.0, 20.0}) {
     CAPTURE(metres);
     Vehicle const vehicle = exact();
-    Run const run = simulate(straight, vehicle, World{}, ahead(metres), 1);
+    Run const run = simulate(to_goal, vehicle, World{}, ahead(metres), 1);
     REQUIRE(run.ending == Ending::arrived);
     CHECK(run.last_status == Status::arrived);
     Pace const pace{};
     double const top = static_cast<double>(pace.top_speed);
-    double const radius = static_cast<double>(straight.arrive_within);
+    double const radius = static_cast<double>(to_goal.arrive_within);
     double const cruise = (metres - radius) / top;
     CHECK(run.time >= cruise + 0.5 * top / vehicle.acceleration);  // less than half the start-up is lost for nothing
     // From where the pace falls below top speed, at worst the slowest of it: that at the arrival radius.
     double const braking = static_cast<double>(pace.braking);
     double const slowing = static_cast<double>(pace.reaction) * top + 0.5 * top * top / braking;
-    double const slowest = static_cast<double>(pace.stoppable(straight.arrive_within));
+    double const slowest = static_cast<double>(pace.stoppable(to_goal.arrive_within));
     double const late = (slowing - radius) * (1.0 / slowest - 1.0 / top);
     CHECK(run.time <= cruise + top / vehicle.acceleration + late + vehicle.latency + 2.0 * vehicle.period);
     CHECK(run.straight_length == metres);
@@ -145,7 +145,7 @@ TEST_CASE("a policy that does not look where it goes touches the disc, and by no
   CHECK(run.time >= way / 0.6);
   CHECK(run.time <= way / 0.6 + 0.6 / 2.0 + 0.05 + 0.05);
   // The same world with the pace that brakes: no contact.
-  Run const heedful = simulate(straight, exact(), world, ahead(4.0, 40.0), 1);
+  Run const heedful = simulate(to_goal, exact(), world, ahead(4.0, 40.0), 1);
   CHECK(heedful.ending == Ending::time_out);
   CHECK(heedful.least_clearance > 0.0);
   CHECK(heedful.last_status == Status::blocked);
@@ -154,8 +154,8 @@ TEST_CASE("a policy that does not look where it goes touches the disc, and by no
 TEST_CASE("a machine that starts in a disc has touched it, even on the goal") {
   World world;
   world.add(0.0, 0.3, 0.2);
-  CHECK(simulate(straight, exact(), world, ahead(4.0), 1).ending == Ending::contact);
-  Run const on_goal = simulate(straight, exact(), world, ahead(0.0), 1);
+  CHECK(simulate(to_goal, exact(), world, ahead(4.0), 1).ending == Ending::contact);
+  Run const on_goal = simulate(to_goal, exact(), world, ahead(0.0), 1);
   CHECK(on_goal.ending == Ending::contact);
   CHECK(on_goal.least_clearance == doctest::Approx(-0.1));
 }
@@ -201,7 +201,7 @@ TEST_CASE("a machine whose every beam drops out is blind and never moves") {
   vehicle.dropout = 1.0;
   World world;
   world.add(2.0, 0.0, 0.3);
-  Run const run = simulate(straight, vehicle, world, ahead(4.0, 5.0), 1, 0, true);
+  Run const run = simulate(to_goal, vehicle, world, ahead(4.0, 5.0), 1, 0, true);
   CHECK(run.ending == Ending::time_out);
   CHECK(run.last_status == Status::blind);
   CHECK(run.path_length == 0.0);
@@ -214,17 +214,17 @@ TEST_CASE("a machine whose every beam drops out is blind and never moves") {
 TEST_CASE("a run that ends for want of time says why, and takes the time it was allowed") {
   World world;
   world.add(4.0, 0.0, 0.5);
-  Run const blocked = simulate(straight, exact(), world, ahead(4.0, 12.0), 1);  // the goal lies in the disc
+  Run const blocked = simulate(to_goal, exact(), world, ahead(4.0, 12.0), 1);  // the goal lies in the disc
   CHECK(blocked.ending == Ending::time_out);
   CHECK(blocked.last_status == Status::blocked);
   CHECK(blocked.time >= 12.0);
   CHECK(blocked.time <= 12.0 + 0.05 + 1e-9);
-  Run const on_its_way = simulate(straight, exact(), World{}, ahead(40.0, 10.0), 1);
+  Run const on_its_way = simulate(to_goal, exact(), World{}, ahead(40.0, 10.0), 1);
   CHECK(on_its_way.ending == Ending::time_out);
   CHECK(on_its_way.last_status == Status::ok);
   Vehicle late = exact();
   late.period = 0.6;  // longer than the loop takes for fresh
-  CHECK(simulate(straight, late, World{}, ahead(4.0, 5.0), 1).last_status == Status::stale);
+  CHECK(simulate(to_goal, late, World{}, ahead(4.0, 5.0), 1).last_status == Status::stale);
   CHECK(std::string(lab::text(blocked.ending)) == "time out");
 }
 
@@ -232,12 +232,12 @@ TEST_CASE("latency moves the first response later by as much") {
   Vehicle vehicle = exact();
   vehicle.period = 0.01;
   vehicle.latency = 0.0;
-  double const at_once = first_moved(simulate(straight, vehicle, World{}, ahead(4.0), 1, 0, true));
+  double const at_once = first_moved(simulate(to_goal, vehicle, World{}, ahead(4.0), 1, 0, true));
   CHECK(at_once <= 0.01 + 1e-9);
   for (double const latency : {0.05, 0.20, 0.43}) {
     CAPTURE(latency);
     vehicle.latency = latency;
-    double const late = first_moved(simulate(straight, vehicle, World{}, ahead(4.0), 1, 0, true));
+    double const late = first_moved(simulate(to_goal, vehicle, World{}, ahead(4.0), 1, 0, true));
     CHECK(late - at_once >= latency - 1e-9);
     CHECK(late - at_once <= latency + 0.01 + 1e-9);  // one period: moves show at ticks
   }
@@ -247,7 +247,7 @@ TEST_CASE("wheels do not speed up faster than they can, nor turn faster, whateve
   Vehicle vehicle = exact();
   vehicle.acceleration = 0.5;
   vehicle.drive.max_rate = 6.0F;  // 0.3 m/s; the loop believes in 1 m/s and wants 0.6
-  Run const run = simulate(straight, vehicle, World{}, ahead(5.0), 1, 0, true);
+  Run const run = simulate(to_goal, vehicle, World{}, ahead(5.0), 1, 0, true);
   CHECK(run.ending == Ending::arrived);
   double fastest = 0.0;
   double hardest = 0.0;

@@ -72,9 +72,22 @@ struct blended_field {
     Course<S> const at_high = evaluate(high, percept, memory.high);
     Vec2<S> const sum = scaled(at_low.direction, S((S(1.0F) - w) * at_low.confidence)) +
                         scaled(at_high.direction, S(w * at_high.confidence));
-    Polar<S> const way = polar(sum);
-    S const more = w * (at_high.speed_share - at_low.speed_share);  // 0 where they agree, so that 1 and 1 make 1
-    return course_along(way, least(way.length, S(1.0F)), clamp(S(at_low.speed_share + more), S(0.0F), S(1.0F)));
+    if constexpr (std::floating_point<S>) {  // a derivative differs where values are the same
+      // What is the same in both needs no arithmetic, and most often the compiler sees that it is.
+      bool const alike = at_high.speed_share == at_low.speed_share;
+      S const mixed = alike ? at_low.speed_share
+                            : S(at_low.speed_share + w * (at_high.speed_share - at_low.speed_share));
+      S const speed_share = clamp(mixed, S(0.0F), S(1.0F));
+      S const size = length(sum);  // asked once whether there is a direction, where course_along would ask again
+      return choose(
+          size > S(no_length),
+          [&]() noexcept { return Course<S>{scaled(sum, S(S(1.0F) / size)), least(size, S(1.0F)), speed_share}; },
+          [&]() noexcept { return Course<S>{zero2<S>(), S(0.0F), speed_share}; });
+    } else {
+      Polar<S> const way = polar(sum);
+      S const more = w * (at_high.speed_share - at_low.speed_share);  // 0 where they agree, so that 1 and 1 make 1
+      return course_along(way, least(way.length, S(1.0F)), clamp(S(at_low.speed_share + more), S(0.0F), S(1.0F)));
+    }
   }
 };
 

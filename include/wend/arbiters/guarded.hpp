@@ -49,7 +49,11 @@ struct guarded_field {
   [[nodiscard]] constexpr Course<S> operator()(Percept<S, N> const& percept, Memory<S>& memory) const noexcept {
     mask_t<S> const now = ask(guard, percept, memory.guard);
     mask_t<S> const switched = (now && !memory.is_inside) || (!now && memory.is_inside);
-    memory.is_inside = now;
+    if constexpr (PlainNumber<S>) {
+      assign_where(switched, memory.is_inside, now);  // else it is that already, and nothing is stored
+    } else {
+      memory.is_inside = now;
+    }
     return detail::ask_one(now, switched, inside, memory.inside, outside, memory.outside, percept);
   }
 };

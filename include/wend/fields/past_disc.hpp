@@ -28,12 +28,16 @@ struct past_disc {
     mask_t<S> const first = !(dot(memory.away, memory.away) > S(0.0F));
     mask_t<S> const another = dot(memory.away, away) < S(0.5F);  // cosine of 60 degrees
     // With the disc on the right hand the machine goes to the right of `away`, which points from the disc to it.
-    mask_t<S> const right_to_goal = cross(away, percept.goal_direction) <= S(0.0F);
-    mask_t<S> const right_to_nose = cross(away, percept.pose.heading) <= S(0.0F);
-    mask_t<S> const chosen = select(another, right_to_nose, memory.disc_on_right);
-    mask_t<S> const disc_on_right = select(first, right_to_goal, chosen);
-    memory.disc_on_right = select(some, disc_on_right, memory.disc_on_right);
-    memory.away = select(some, away, memory.away);
+    auto const right_to = [&away](Vec2<S> const& way) noexcept -> mask_t<S> { return cross(away, way) <= S(0.0F); };
+    mask_t<S> const disc_on_right = choose(
+        first, [&]() noexcept { return right_to(percept.goal_direction); },
+        [&]() noexcept {
+          return choose(
+              another, [&]() noexcept { return right_to(percept.pose.heading); },
+              [&]() noexcept { return memory.disc_on_right; });
+        });
+    assign_where(some, memory.disc_on_right, disc_on_right);
+    assign_where(some, memory.away, away);
     Vec2<S> const left = left_of(away);
     Vec2<S> const right = -left;
     return {select(disc_on_right, right, left), percept.away_confidence};

@@ -5,6 +5,10 @@
 #include <cstdint>
 #include <type_traits>
 
+#if defined(__SSE__)
+#include <immintrin.h>
+#endif
+
 #include <Eigen/Core>
 
 #include "wend/number.hpp"
@@ -27,6 +31,16 @@ struct Row {
 };
 
 }  // namespace detail
+
+/// How many numbers fit the widest registers that the compiler may use. g++ 12 takes comparisons of longer rows apart,
+/// so that more lanes than these are slower.
+#if defined(__AVX512F__)
+inline constexpr int native_lanes = 16;
+#elif defined(__AVX__)
+inline constexpr int native_lanes = 8;
+#else
+inline constexpr int native_lanes = 4;
+#endif
 
 /// W single-precision numbers side by side (the compilers' vector extension, which g++ and clang share). Each lane does
 /// what a float alone would do, bit for bit, as long as the compiler may not contract a product and a sum into one
@@ -71,8 +85,14 @@ class Pack {
     }
   }
 
+  /// From and to the compilers' own row of numbers, for what has to work on bits.
+  explicit Pack(Lanes const& lanes) noexcept : lanes_(lanes) {}
+  [[nodiscard]] Lanes const& lanes() const noexcept { return lanes_; }
+
   [[nodiscard]] static constexpr int width() noexcept { return W; }
   [[nodiscard]] float operator[](int lane) const noexcept { return lanes_[lane]; }
+  /// Another value in one lane.
+  void set(int lane, float value) noexcept { lanes_[lane] = value; }
 
   [[nodiscard]] friend Pack operator+(Pack const& a, Pack const& b) noexcept { return Pack(a.lanes_ + b.lanes_); }
   [[nodiscard]] friend Pack operator-(Pack const& a, Pack const& b) noexcept { return Pack(a.lanes_ - b.lanes_); }
@@ -90,16 +110,36 @@ class Pack {
   [[nodiscard]] friend Pack select(Mask const& m, Pack const& a, Pack const& b) noexcept {
     return Pack(m.bits() ? a.lanes_ : b.lanes_);
   }
-  [[nodiscard]] friend Pack sqrt(Pack const& a) noexcept {
-    return Pack([&a](int lane) noexcept { return std::sqrt(a[lane]); });
-  }
+  [[nodiscard]] friend Pack sqrt(Pack const& a) noexcept { return Pack(roots(a.lanes_)); }
   [[nodiscard]] friend Mask finite(Pack const& a) noexcept {
     constexpr std::int32_t exponent = 0x7f800000;
     return Mask((reinterpret_cast<Bits>(a.lanes_) & exponent) != exponent);
   }
 
  private:
-  explicit Pack(Lanes const& lanes) noexcept : lanes_(lanes) {}
+  // Neither compiler surely makes one instruction of a loop over std::sqrt.
+  [[nodiscard]] static Lanes roots(Lanes const& x) noexcept {
+#if defined(__AVX512F__)
+    if constexpr (W == 16) {
+      return _mm512_sqrt_ps(x);
+    }
+#endif
+#if defined(__AVX__)
+    if constexpr (W == 8) {
+      return _mm256_sqrt_ps(x);
+    }
+#endif
+#if defined(__SSE__)
+    if constexpr (W == 4) {
+      return _mm_sqrt_ps(x);
+    }
+#endif
+    Lanes result{};
+    for (int lane = 0; lane < W; ++lane) {
+      result[lane] = std::sqrt(x[lane]);
+    }
+    return result;
+  }
 
   Lanes lanes_{};
 };

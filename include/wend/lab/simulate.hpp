@@ -57,6 +57,7 @@ struct Run {
   double path_length = 0.0;      ///< metres
   double straight_length = 0.0;  ///< metres, from start to goal
   double least_clearance = std::numeric_limits<double>::infinity();  ///< metres over the whole path, not only at ticks
+  double contact_speed = 0.0;  ///< metres a second that the body drove at when it touched a disc; 0 where it stood
   int switches = 0;  ///< ticks on which a guard changed its mind
   double least_dwell = std::numeric_limits<double>::infinity();  ///< seconds between two switches, at the least
   std::vector<Tick> ticks;  ///< empty unless asked for
@@ -319,6 +320,7 @@ template <PlainNumber S = float, typename Loop>
       run.path_length += std::abs(body.speed) * step;
       if (run.least_clearance <= 0.0) {
         run.time = time + step;
+        run.contact_speed = std::abs(body.speed);
         run.ending = Ending::contact;
         return run;
       }

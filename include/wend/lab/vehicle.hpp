@@ -20,6 +20,12 @@ struct Vehicle {
   double dropout = 0.01;       ///< share of the beams that read 0 at any time
   double position_noise = 0.0;  ///< metres, standard deviation of each coordinate of the pose estimate, anew each tick
   double heading_noise = 0.0;  ///< radians, standard deviation of the estimated heading, anew each tick
+  double disc_noise = 0.0;     ///< metres, standard deviation of each coordinate of a disc that is told, anew each tick
+  double radius_noise = 0.0;   ///< metres: a told radius is off by up to this, evenly and anew each tick, at least 0
+  double disc_dropout = 0.0;   ///< share of the discs that are not told at any tick, of a loop that is told discs
+  double slip = 0.0;           ///< share of its rim speed that a wheel loses at most, evenly drawn anew each tick
+  double wheel_spread = 0.0;   ///< share by which each wheel's radius is off at most, evenly drawn once a run
+  double track_spread = 0.0;   ///< share by which the track is off at most, evenly drawn once a run
 };
 
 }  // namespace wend::inline v0::lab
