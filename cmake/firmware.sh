@@ -320,12 +320,12 @@ RISC-V (RV32IMAFC), and runs it under QEMU on a recorded run of $ticks ticks tha
 \`-ffp-contract=off\`: without it a compiler may fuse a * b + c into one rounding where the processor can, and only there. \`-ffast-math\` reorders sums and loses it. x87 arithmetic (32-bit x86
 without SSE) rounds in another width. \`-fno-math-errno\` changes no bit; it keeps a branch to the C library away from each square root.
 
-**No heap, no surprises.** The library's part is linked by itself and asked for its symbols: \`sqrtf\` and copying, and without a floating-point unit the single-precision helpers of the compiler's library; nothing
+**No heap, no surprises.** The library's part is linked by itself and asked for its symbols: sqrtf and copying, and without a floating-point unit the single-precision helpers of the compiler's library; nothing
 that allocates, prints, throws, or calculates in double precision. No variables: all that changes is in the memory struct.
 
 **Counted.** Instructions from the first of a function to its return, as QEMU executes them (\`-O2\`; not cycles: a root or a quotient counts as one, or, without a floating-point unit, as all that its routine takes). The decision is that of
 \`bench/by_hand.h\` (past the nearest disc when near, else a blend of away and to the goal), from given discs to a course, look included: composed, by hand in C (which keeps the way to the
-nearest disc from the search, as \`look\` does; plainly: which works it out again), and in the textbooks' form with \`atan2f\`, \`sinf\` and \`cosf\` (\`bench/textbook.h\`); mean over 1024 ticks of 32 drives, the same for all. n discs: a + b n, from 1 and
+nearest disc from the search, as \`look\` does; plainly: which works it out again), and in the textbooks' form with atan2f, sinf and cosf (\`bench/textbook.h\`); mean over 1024 ticks of 32 drives, the same for all. n discs: a + b n, from 1 and
 32. Stack is painted, the deepest on any tick. Flash is code and constants of the library's part, without the compiler's library.
 
 | | Cortex-M4F | Cortex-M3 | RV32IMAFC |

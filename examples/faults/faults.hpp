@@ -123,8 +123,8 @@ inline std::vector<Fault> all() {
   list.push_back(of_ranges("beam ahead dead", [](auto const&, auto ranges) { ranges[0] = 0.0F; }));
   list.push_back(of_ranges(
       "10 beams ahead dead", [](auto const&, auto ranges) { ahead(ranges, 5, 0.0F); },
-      "what is dead ahead is seen by the beams that are dead; more than half of all have to be "
-      "for the loop to stop"));
+      "what stands there may be seen by no other beam, and the loop stops only when half of all beams "
+      "are dead"));
   list.push_back(of_ranges("10 beams ahead see nothing", [](auto const&, auto r) { ahead(r, 5, no_echo); }, lies));
   list.push_back(of_each_range("all beams dead", [](float) { return 0.0F; }));
   list.push_back(of_each_range("all beams not a number", [](float) { return nan; }));
