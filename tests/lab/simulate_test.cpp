@@ -162,7 +162,7 @@ TEST_CASE("a machine that starts in a disc has touched it, even on the goal") {
 
 // Uniform motion: 2.5 m between the edges, closed at 1 m/s less what the machine itself does, 0.2 m/s at most.
 TEST_CASE("a disc that comes from behind is noticed when it touches") {
-  Loop<toward_goal, Ring<90>> slow = straight;
+  Loop<toward_goal, Ring<90>> slow = to_goal;
   slow.pace.top_speed = 0.2F;
   World world;
   world.add(-3.0, 0.0, 0.3, {1.0, 0.0});
@@ -268,7 +268,7 @@ TEST_CASE("wheels do not speed up faster than they can, nor turn faster, whateve
 TEST_CASE("least_clearance is no more than at any tick, and less by no more than the way between ticks") {
   Loop<decltype(policies::two_thresholds), Ring<180>> const loop{.policy = policies::two_thresholds,
                                                                  .sensing = cellar::ring};
-  Loop<toward_goal, Ring<90>> const to_goal = straight;
+  Loop<toward_goal, Ring<90>> const to_goal = to_goal;
   World far;
   far.add(3.0, 30.0, 0.5);  // farther than the ranger or a tick reaches
   World crossing = cellar::world();
