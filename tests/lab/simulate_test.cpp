@@ -268,7 +268,6 @@ TEST_CASE("wheels do not speed up faster than they can, nor turn faster, whateve
 TEST_CASE("least_clearance is no more than at any tick, and less by no more than the way between ticks") {
   Loop<decltype(policies::two_thresholds), Ring<180>> const loop{.policy = policies::two_thresholds,
                                                                  .sensing = cellar::ring};
-  Loop<toward_goal, Ring<90>> const to_goal = to_goal;
   World far;
   far.add(3.0, 30.0, 0.5);  // farther than the ranger or a tick reaches
   World crossing = cellar::world();
