@@ -4,7 +4,7 @@
 #   sh cmake/test.sh                 in build/, with the compiler that is found
 #   CXX=clang++-14 sh cmake/test.sh  in build/clang++-14/
 #
-# Arguments go to CMake; WEND_BUILD names another build folder, seen from the project's.
+# Arguments go to CMake; WEND_BUILD names another build folder, seen from the project's; WEND_CTEST goes to ctest.
 set -eu
 case $0 in */*) cd "${0%/*}/.." ;; *) cd .. ;; esac
 
@@ -14,4 +14,4 @@ setup_for=tests
 
 cmake -S . -B "$build" -DWEND_TESTS=ON -DWEND_EXAMPLES=ON -DWEND_BENCH=ON "$@"
 cmake --build "$build"
-ctest --test-dir "$build" --output-on-failure --no-tests=error -j "$(getconf _NPROCESSORS_ONLN)"
+ctest --test-dir "$build" --output-on-failure --no-tests=error -j "$(getconf _NPROCESSORS_ONLN)" ${WEND_CTEST:-}
