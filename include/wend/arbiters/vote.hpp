@@ -44,6 +44,18 @@ struct Voters {
   }
 };
 
+// Bearings all round, from straight ahead outwards, left before right. A function, since clang 14 does not take a
+// lambda for one that only the compiler runs.
+template <int Count>
+[[nodiscard]] consteval std::array<Bearing, static_cast<std::size_t>(Count)> bearings_outwards() noexcept {
+  std::array<Bearing, static_cast<std::size_t>(Count)> all{};
+  for (int i = 0; i < Count; ++i) {
+    double const angle = 2.0 * std::numbers::pi / Count * ((i + 1) / 2);
+    all[static_cast<std::size_t>(i)] = bearing(i % 2 == 1 ? angle : -angle);
+  }
+  return all;
+}
+
 struct NoVoters {
   static constexpr int count = 0;
   [[nodiscard]] constexpr Parameter weights() const noexcept { return 0.0F; }
@@ -101,15 +113,8 @@ struct vote_field {
   }
 
   /// The candidates, from the nose outwards, left before right.
-  static constexpr std::array<Bearing, static_cast<std::size_t>(Candidates)> candidates = []() consteval {
-    std::array<Bearing, static_cast<std::size_t>(Candidates)> all{};
-    for (int i = 0; i < Candidates; ++i) {
-      int const step = (i + 1) / 2;
-      double const angle = 2.0 * std::numbers::pi / Candidates * step;
-      all[static_cast<std::size_t>(i)] = bearing(i % 2 == 1 ? angle : -angle);
-    }
-    return all;
-  }();
+  static constexpr std::array<Bearing, static_cast<std::size_t>(Candidates)> candidates =
+      detail::bearings_outwards<Candidates>();
 };
 
 namespace detail {
