@@ -1,12 +1,11 @@
 // Null-space priority: Antonelli, Arrichiello and Chiaverini (2008), The null-space-based behavioral control for
-// autonomous robotic systems, Intelligent Service Robotics 1:27-39 (from memory): v = v1 + (I - J^+ J) v2, with the
-// pseudo-inverse here by Eigen's complete orthogonal decomposition.
+// autonomous robotic systems, Intelligent Service Robotics 1:27-39 (from memory): v = v1 + (I - J^+ J) v2, in
+// matrices.
 #include <cmath>
 #include <random>
 
 #include <doctest/doctest.h>
 #include <Eigen/Core>
-#include <Eigen/QR>
 
 #include "../scenes.hpp"
 #include "wend/arbiters/null_space.hpp"
@@ -39,8 +38,9 @@ TEST_CASE("null_space is v1 + (I - J^+ J) v2, as far as a confidence goes") {
     wend::Vec2<double> const v1 = velocity(scenes::answer(first, scene));
     wend::Vec2<double> const v2 = velocity(scenes::answer(second, scene));
     Eigen::Matrix<double, 1, 2> const jacobian = v1.normalized().transpose();
-    Eigen::Matrix2d const null = Eigen::Matrix2d::Identity() -
-                                 jacobian.completeOrthogonalDecomposition().pseudoInverse() * jacobian;
+    // The right pseudo-inverse of a full row: J^T (J J^T)^-1.
+    Eigen::Vector2d const inverse = jacobian.transpose() / jacobian.squaredNorm();
+    Eigen::Matrix2d const null = Eigen::Matrix2d::Identity() - inverse * jacobian;
     wend::Vec2<double> const expected = v1 + null * v2;
     wend::Vec2<double> const found = velocity(scenes::answer(wend::null_space(first, second), scene));
     CHECK((found - expected).norm() < 1.0e-12);

@@ -76,7 +76,9 @@ void explain_pace(Pace const& pace, Percept const& percept, Account& account) {
 template <typename Loop, typename Percept, typename Before, typename Command>
 void explain_parts(Loop const& loop, Percept const& percept, Before const& before, Command const& command,
                    Account& account) {
-  auto const& [policy, pace, steering] = loop;
+  auto const& policy = loop.policy;
+  auto const& pace = loop.pace;
+  auto const& steering = loop.steering;
   auto const& findings = command.findings;
   if (findings.stale || findings.blind) {
     account.line(1, "policy: not heeded, and nothing remembered, as what it was told cannot be trusted");
