@@ -255,7 +255,9 @@ TEST_CASE("ticks between the bytes of a dump leave records whole, or told as ove
     std::size_t every;  // bytes sent between two ticks
     int kept;
   };
-  for (auto const [every, expected] : {Case{1, 0}, {50, 1}, {120, 2}, {170, 5}, {199, 8}, {2000, 8}}) {
+  for (Case const& now : {Case{1, 0}, {50, 1}, {120, 2}, {170, 5}, {199, 8}, {2000, 8}}) {
+    std::size_t const every = now.every;
+    int const expected = now.kept;
     CAPTURE(every);
     Log<8> log;
     Memory memory;
