@@ -58,9 +58,9 @@ bool for_each_answer(Memory const& memory, F const& f, int depth = 4) {
 
 // What the point machine and the whole one have in common: discs at rest, a goal, and a body that is a disc.
 template <int Capacity>
-class Surroundings {
+class StillSurroundings {
  public:
-  Surroundings(World const& world, Vec2<double> const& goal, Parameter robot_radius, Parameter arrive_within)
+  StillSurroundings(World const& world, Vec2<double> const& goal, Parameter robot_radius, Parameter arrive_within)
       : world_(world), goal_(goal), robot_radius_(robot_radius), arrive_within_(arrive_within) {
     expect_still("arrival_map", world, Capacity);
   }
@@ -104,9 +104,9 @@ class Surroundings {
 /// A point machine that follows the policy's course at once: each step leads `length` metres straight along it. The
 /// policy is given the exact position rounded to float, any heading and any memory, and computes in float.
 template <typename Policy, int Capacity>
-class PointSteps : public detail::Surroundings<Capacity> {
+class PointSteps : public detail::StillSurroundings<Capacity> {
   using F = FloatInterval;
-  using Base = detail::Surroundings<Capacity>;
+  using Base = detail::StillSurroundings<Capacity>;
 
  public:
   static constexpr bool has_heading = false;
@@ -149,9 +149,9 @@ class PointSteps : public detail::Surroundings<Capacity> {
 /// of the command for one period. The loop is given all discs, goal and pose in the frame of the middle of the box,
 /// which is its own frame as a rule, rounded to float, and computes in float.
 template <typename Loop, int Capacity>
-class LoopSteps : public detail::Surroundings<Capacity> {
+class LoopSteps : public detail::StillSurroundings<Capacity> {
   using F = FloatInterval;
-  using Base = detail::Surroundings<Capacity>;
+  using Base = detail::StillSurroundings<Capacity>;
 
  public:
   static constexpr bool has_heading = true;
