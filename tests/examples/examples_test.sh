@@ -278,13 +278,13 @@ refuses 'replay with a negative reach' "expected a length in metres over 0, foun
 
 for policy in hard-switch two-thresholds blend composed; do
   for as in '' --as-discs; do
-    what="replay: a dump of $policy${as:+, $as}"
+    kind="replay: a dump of $policy${as:+, $as}"
     run replay --policy "$policy" --every 1000 --dump-to run.dump $as "$data/spruces-run.csv"
-    check "$what: is written" prints "^The last $rows decisions are in run.dump, [0-9]+ bytes each\$"
+    check "$kind: is written" prints "^The last $rows decisions are in run.dump, [0-9]+ bytes each\$"
     run replay --dump run.dump --brief
-    check "$what: exit code 0" ended_with 0
-    check "$what: is taken for what it is" prints "^run.dump: $rows decisions of the policy '$policy', from tick 0\$"
-    check "$what: falls the same" prints "^$rows of $rows decisions fall as they were logged, bit by bit\$"
+    check "$kind: exit code 0" ended_with 0
+    check "$kind: is taken for what it is" prints "^run.dump: $rows decisions of the policy '$policy', from tick 0\$"
+    check "$kind: falls the same" prints "^$rows of $rows decisions fall as they were logged, bit by bit\$"
   done
 done
 run replay --every 1000 --as-discs --dump-to run.dump "$data/spruces-run.csv"

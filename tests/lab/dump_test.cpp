@@ -348,6 +348,21 @@ TEST_CASE("a fresh memory between two records is a new goal, and no difference")
   CHECK(decide_again(loop, read_dump<Discs>("dump", dumped(log, loop), loop)).empty());
 }
 
+TEST_CASE("across a missing record, nothing is said of what was remembered") {
+  DecisionLog<std::remove_const_t<decltype(loop)>, Discs, 4> log;
+  wend::memory_t<std::remove_const_t<decltype(loop)>, float> memory;
+  for (int i = 0; i < 4; ++i) {
+    Situation<float> now;
+    now.goal = {4.0F, 0.0F};
+    log.tick(loop, now, Discs{}, memory);  // each tick remembers how long there was no progress
+  }
+  auto dump = read_dump<Discs>("dump", dumped(log, loop), loop);
+  dump.decisions.erase(dump.decisions.begin() + 1);
+  CHECK(decide_again(loop, dump).empty());
+  dump.decisions[1].number = 1;  // as if it had followed
+  CHECK(decide_again(loop, dump).size() == 1);
+}
+
 TEST_CASE("members of one's own are named by their place, those of the library by their names") {
   struct Own {
     float warmth = 1.0F;

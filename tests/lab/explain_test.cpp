@@ -13,6 +13,9 @@
 #include "wend/lab/explain.hpp"
 #include "wend/lab/explain_tick.hpp"
 #include "wend/loop.hpp"
+#include "wend/motion/slew.hpp"
+#include "wend/sensing/followed.hpp"
+#include "wend/sensing/keep_in_mind.hpp"
 #include "wend/sensing/ring.hpp"
 #include "wend/watch/log.hpp"
 
@@ -91,7 +94,7 @@ TEST_CASE("a whole tick is explained line by line") {
   Account const account = wend::lab::explain_tick(loop, decision);
   CHECK(account.voices == Lines{"past_disc"});
   Lines const expected{
-      "tick 7: ok; wheels left -4.500, right 4.500 rad/s",
+      "tick 7: ok; wheels left -4.500, right 4.500",
       "  inputs: dt 0.050 s, age 0.000 s",
       "  goal: 4.000 m away, +0.0 deg",
       "  seen: 1 disc, the nearest 0.200 m from the robot's edge, +0.0 deg",
@@ -119,13 +122,14 @@ TEST_CASE("a tick that must not drive says why") {
   decision.now.dt = 0.0F;
   Account stale = wend::lab::explain_tick(L{}, decision);
   CHECK(stale.lines == Lines{
-                           "tick 0: stale; wheels left 0.000, right 0.000 rad/s",
+                           "tick 0: stale; wheels left 0.000, right 0.000",
                            "  inputs: dt 0.000 s, age 0.000 s",
                            "  goal: 0.500 m away, +53.1 deg",
                            "  seen: 0 discs",
                            "  policy: not heeded, and nothing remembered, as what it was told cannot be trusted",
                            "  pace: 0.600 m/s allowed, the top speed",
-                           "  body: stopped, whatever the course",
+                           "  steering: none, the machine is to stand whatever the course",
+                           "  body: speed 0.000, turn_rate 0.000",
                            "  progress: nearest 1e+06, since 0.000",
                            "  findings: stale",
                        });
@@ -134,7 +138,7 @@ TEST_CASE("a tick that must not drive says why") {
   decision.now.goal = {0.1F, 0.0F};
   decision.now.dt = 0.05F;
   Account const arrived = wend::lab::explain_tick(L{}, decision);
-  CHECK(arrived.lines.at(0) == "tick 0: arrived; wheels left 0.000, right 0.000 rad/s");
+  CHECK(arrived.lines.at(0) == "tick 0: arrived; wheels left 0.000, right 0.000");
   CHECK(arrived.lines.at(4) == "  policy: toward_goal -> +0.0 deg, confidence 1.000");
   CHECK(arrived.lines.at(5) == "  heard: toward_goal");
   CHECK(arrived.lines.at(6) == "  pace: 0.247 m/s allowed, to stop in the 0.100 m to the goal");
@@ -159,6 +163,47 @@ TEST_CASE("readings are told as echoes and discs, in the robot's own frame") {
   CHECK(account.lines.at(2) == "  goal: 2.000 m away, -90.0 deg");
   CHECK(account.lines.at(3) == "  seen: 0 echoes, 7 of 8 beams alive, 0 discs");
   CHECK(account.lines.at(4) == "  policy: toward_goal -> -90.0 deg, confidence 1.000");
+}
+
+TEST_CASE("a loop whose sensing remembers is explained from what it remembered") {
+  using Sensing = wend::Followed<wend::Ring<8>, wend::KeepInMind<4>>;
+  using L = Loop<toward_goal, Sensing>;
+  L const loop{.policy = {},
+               .sensing = {{wend::even_bearings<8>(0.0, std::numbers::pi / 4.0), 0.05F, 6.0F, 0.01F}, {}}};
+  Decision<L, wend::Readings<float, 8>> decision;
+  decision.now.goal = {4.0F, 0.0F};
+  decision.seen.ranges.fill(std::numeric_limits<float>::infinity());
+  CHECK(wend::lab::explain_tick(loop, decision).lines.at(3) == "  seen: 0 echoes, 8 of 8 beams alive, 0 discs");
+  // Out of reach of the ranger, so it is not seen, and kept: 5 m ahead, 0.05 m/s * 0.05 s larger. 5 - 0.2 - 0.2.
+  decision.before.sensing.step.discs[0] = {{{5.0F, 0.0F}, 0.2F}, {0.0F, 0.0F}, 0.0F};
+  CHECK(wend::lab::explain_tick(loop, decision).lines.at(3) ==
+        "  seen: 0 echoes, 8 of 8 beams alive, 1 disc, the nearest 4.598 m from the robot's edge, +0.0 deg");
+}
+
+TEST_CASE("a disc that comes nearer is told as what slows the machine") {
+  using L = Loop<toward_goal>;
+  Decision<L, wend::MovingDiscSet<float, 8>> decision;
+  decision.now.goal = {4.0F, 0.0F};
+  // 2 m of clearance, and it comes at 2 m/s: standing still is all that helps. Standing, it would leave the top speed.
+  decision.seen.add({{2.4F, 0.0F}, 0.2F}, {-2.0F, 0.0F});
+  std::string const line = wend::lab::explain_tick(L{}, decision).lines.at(6);
+  CHECK(line.find("  pace: 0.") == 0);
+  CHECK(line.find(" m/s allowed, because of how the discs move") != std::string::npos);
+  decision.seen = {};
+  decision.seen.add({{2.4F, 0.0F}, 0.2F});
+  CHECK(wend::lab::explain_tick(L{}, decision).lines.at(6) == "  pace: 0.600 m/s allowed, the top speed");
+}
+
+TEST_CASE("a slew shows in what the body does of what the steering wanted") {
+  using L = Loop<past_disc, wend::no_sensing, wend::DifferentialDrive, wend::Steering, wend::Slew>;
+  Decision<L, DiscSet<float, 8>> decision;
+  decision.now.goal = {4.0F, 0.0F};
+  decision.seen.add({{0.6F, 0.0F}, 0.2F});
+  L loop;
+  loop.slew.turn_acceleration = 8.0F;  // rad/s^2: from rest 0.4 rad/s in 0.05 s
+  auto const lines = wend::lab::explain_tick(loop, decision).lines;
+  CHECK(lines.at(7) == "  steering: speed 0.000, turn_rate 1.500 wanted");
+  CHECK(lines.at(8) == "  body: speed 0.000, turn_rate 0.400");
 }
 
 TEST_CASE("a guard tells its signal, and the threshold that decided") {

@@ -39,7 +39,13 @@ std::string memory_text(Memory const& memory) {
     return number_text(memory);
   } else if constexpr (requires { memory.x(), memory.y(); }) {
     return "(" + number_text(memory.x()) + ", " + number_text(memory.y()) + ")";
-  } else if constexpr (std::is_aggregate_v<Memory> && !requires { memory.size(); }) {
+  } else if constexpr (requires { memory.begin(), memory.end(); }) {
+    std::string text;
+    for (auto const& one : memory) {
+      text += (text.empty() ? "[" : ", ") + memory_text(one);
+    }
+    return text + "]";
+  } else if constexpr (std::is_aggregate_v<Memory>) {
     std::string text;
     for_each_named_member(memory, memory, [&text](std::string const& name, auto const& member, auto const&) {
       if constexpr (!std::is_empty_v<std::remove_cvref_t<decltype(member)>>) {
