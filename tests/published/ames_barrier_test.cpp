@@ -2,8 +2,12 @@
 // for safety critical systems, IEEE Trans. Automatic Control 62(8):3861-3876 (from memory): the velocity nearest to the
 // one that is wanted under n . (u - v) >= -rate h for every disc.
 #include <algorithm>
+#include <array>
 #include <cmath>
+#include <concepts>
+#include <cstddef>
 #include <cstdint>
+#include <limits>
 #include <random>
 #include <type_traits>
 #include <vector>
@@ -26,6 +30,11 @@ class Random {
  public:
   explicit Random(std::uint32_t seed) : random_(seed) {}
   double between(double low, double high) { return std::uniform_real_distribution<double>(low, high)(random_); }
+  // x first on every compiler: the order of a call's arguments is anybody's.
+  wend::Vec2<double> in_square(double half) {
+    double const x = between(-half, half);
+    return {x, between(-half, half)};
+  }
 
  private:
   std::mt19937 random_;
@@ -56,13 +65,14 @@ wend::Vec2<double> velocity(wend::Course<double> const& course) {
 scenes::Scene<double> random_scene(Random& random, double nearest, bool moving) {
   scenes::Scene<double> scene;
   scene.robot_radius = 0.2;
-  scene.goal = {random.between(-3.0, 3.0), random.between(-3.0, 3.0)};
+  scene.goal = random.in_square(3.0);
   for (int i = 0; i < scenes::disc_count; ++i) {
     double const bearing = random.between(-3.2, 3.2);
     double const radius = random.between(0.1, 0.4);
     double const away = 0.25 + radius + random.between(nearest, nearest + 0.6);
     double const v = moving ? 0.3 : 0.0;
-    scene.put(away * std::cos(bearing), away * std::sin(bearing), radius, random.between(-v, v), random.between(-v, v));
+    wend::Vec2<double> const velocity = random.in_square(v);
+    scene.put(away * std::cos(bearing), away * std::sin(bearing), radius, velocity.x(), velocity.y());
   }
   return scene;
 }
@@ -104,7 +114,7 @@ TEST_CASE("the filter solves the quadratic programme: brute force over a fine gr
     if (best < 1.0e8) {
       CHECK(breach(found) < 1.0e-7);
       CHECK((found - wish).norm() <= best + 1.0e-7);  // no grid point is better
-      CHECK((found - wish).norm() >= best - 0.01);    // and one is as good, to the grid's width
+      CHECK((found - wish).norm() >= best - 0.01);  // and one is as good, to the grid's width
       bound += (found - wish).norm() > 1e-9 ? 1 : 0;
     } else if (least_breach > 0.01) {
       CHECK(breach(found) <= least_breach + 1.0e-7);
@@ -143,49 +153,228 @@ TEST_CASE_TEMPLATE("where nothing binds, the course passes through to the last b
   CHECK(slack > 500);
 }
 
-TEST_CASE("the set is kept for a million steps, among discs that stand and discs that move") {
-  Random random(3);
-  double const dt = 0.1;
-  double least = 1.0e9;
-  int steps = 0;
-  while (steps < 1'000'000) {
-    auto scene = random_scene(random, 0.05, false);
-    std::vector<wend::Vec2<double>> velocities;
-    for (int i = 0; i < scene.discs.size(); ++i) {
-      double const v = i == 0 ? 0.4 : 0.0;  // one that moves, slower than the machine: it can always give way
-      velocities.emplace_back(random.between(-v, v), random.between(-v, v));
+namespace {
+
+// How far the nearest allowed velocity is from the wish, by means of its own: it is the wish, or it lies at the foot of
+// the wish on an edge, on the circle of top speed straight towards the wish, or where two of these lines cross.
+// Infinite where none is allowed with `spare` metres a second to spare.
+double nearest_allowed(std::vector<Constraint> all, wend::Vec2<double> const& wish, double spare) {
+  double const top = static_cast<double>(speed);
+  std::vector<wend::Vec2<double>> candidates{wish, top * wish.normalized(), {0.0, 0.0}};
+  for (Constraint& c : all) {
+    c.offset += spare;
+  }
+  for (std::size_t i = 0; i < all.size(); ++i) {
+    wend::Vec2<double> const foot = all[i].offset * all[i].normal;
+    wend::Vec2<double> const along{-all[i].normal.y(), all[i].normal.x()};
+    double const half = std::sqrt(std::max(top * top - foot.squaredNorm(), 0.0));
+    for (double const t : {along.dot(wish), half, -half}) {
+      candidates.emplace_back(foot + t * along);
     }
-    for (int i = 0; i < 200; ++i, ++steps) {
-      if (i % 20 == 0) {
-        scene.goal = scene.pose.position + wend::Vec2<double>(random.between(-2, 2), random.between(-2, 2));
-      }
-      wend::MovingDiscSet<double, scenes::disc_count> seen;
-      for (int d = 0; d < scene.discs.size(); ++d) {
-        seen.add(scene.discs[d], velocities[static_cast<std::size_t>(d)]);
-      }
-      scene.discs = seen;
-      wend::Vec2<double> const u = velocity(scenes::answer(filtered, scene));
-      auto const all = constraints(scene);
-      bool const feasible =
-          std::none_of(all.begin(), all.end(), [&u](Constraint const& c) { return c.normal.dot(u) < c.offset - 1e-9; });
-      if (!feasible) {
-        break;  // a pincer that leaves no way out; its own test is above
-      }
-      scene.pose.position += dt * u;
-      wend::MovingDiscSet<double, scenes::disc_count> moved;
-      for (int d = 0; d < scene.discs.size(); ++d) {
-        wend::Vec2<double> const& v = velocities[static_cast<std::size_t>(d)];
-        moved.add({scene.discs[d].centre + dt * v, scene.discs[d].radius}, v);
-      }
-      scene.discs = moved;
-      for (auto const& disc : scene.discs) {
-        least = std::min(least, (scene.pose.position - disc.centre).norm() - disc.radius - scene.robot_radius -
-                                    static_cast<double>(margin));
+    for (std::size_t j = 0; j < i; ++j) {
+      double const slope = all[j].normal.dot(along);
+      if (std::abs(slope) > 1.0e-12) {
+        candidates.emplace_back(foot + (all[j].offset - all[j].normal.dot(foot)) / slope * along);
       }
     }
   }
-  CHECK(steps >= 1'000'000);
-  CHECK(least > -1.0e-7);  // the roundings of parameters in single precision
+  double least = std::numeric_limits<double>::infinity();
+  for (wend::Vec2<double> const& u : candidates) {
+    bool const allowed = u.norm() <= top + 1.0e-10 && std::all_of(all.begin(), all.end(), [&u](Constraint const& c) {
+                           return c.normal.dot(u) >= c.offset - 1.0e-10;
+                         });
+    least = allowed ? std::min(least, (u - wish).norm()) : least;
+  }
+  return least;
+}
+
+// Wants a direction, for a share of the speed.
+struct told {
+  wend::Parameter x;
+  wend::Parameter y;
+  wend::Parameter speed_share;
+  template <wend::Number S, int N>
+  [[nodiscard]] constexpr wend::Course<S> operator()(wend::Percept<S, N> const&) const noexcept {
+    return wend::course_along(wend::Vec2<S>(S(x), S(y)), S(0.75F), S(speed_share));
+  }
+};
+
+enum class Discs { stand, drift_together, one_moves };
+
+struct Kept {
+  int steps = 0;
+  int held_back = 0;  // steps on which the wish itself was not allowed
+  int no_way_out = 0;  // runs that ended since no velocity was allowed
+  int overlooked = 0;  // steps on which one was, and what the policy took was not
+  double least = 1.0e9;  // metres: the least h
+  double decay = 1.0e9;  // metres: the least h' - (1 - rate dt) h of a step
+};
+
+// Drives a policy among discs, and moves machine and discs in double, exactly as a velocity held for dt does. The
+// policy sees the scene on S.
+template <std::floating_point S, typename Policy>
+Kept drive(Policy const& policy, Discs kind, double dt, int steps, std::uint32_t seed) {
+  Random random(seed);
+  Kept kept;
+  while (kept.steps < steps) {
+    scenes::Scene<double> scene = random_scene(random, 0.05, false);
+    double const turn = random.between(-3.2, 3.2);
+    double const fast = random.between(0.0, 0.55);  // slower than the machine
+    std::vector<wend::Vec2<double>> velocities(static_cast<std::size_t>(scene.discs.size()), {0.0, 0.0});
+    for (std::size_t i = 0; i < velocities.size(); ++i) {
+      if (kind == Discs::drift_together || (kind == Discs::one_moves && i == 0)) {
+        velocities[i] = {fast * std::cos(turn), fast * std::sin(turn)};
+      }
+    }
+    for (int i = 0; i < 200; ++i) {
+      if (i % 20 == 0) {
+        scene.goal = scene.pose.position + random.in_square(2.0);
+      }
+      scenes::Scene<S> seen;
+      seen.pose.position = scene.pose.position.template cast<S>();
+      seen.goal = scene.goal.template cast<S>();
+      seen.robot_radius = static_cast<S>(scene.robot_radius);
+      wend::MovingDiscSet<double, scenes::disc_count> here;
+      wend::MovingDiscSet<double, scenes::disc_count> moved;
+      for (int d = 0; d < scene.discs.size(); ++d) {
+        wend::Vec2<double> const& v = velocities[static_cast<std::size_t>(d)];
+        wend::Disc<double> const& disc = scene.discs[d];
+        seen.discs.add({disc.centre.template cast<S>(), static_cast<S>(disc.radius)}, v.template cast<S>());
+        here.add(disc, v);
+        moved.add({disc.centre + dt * v, disc.radius}, v);
+      }
+      scene.discs = here;
+      wend::Course<S> const course = scenes::answer(policy, seen);
+      wend::Vec2<double> const u =
+          velocity({course.direction.template cast<double>(), static_cast<double>(course.confidence),
+                    static_cast<double>(course.speed_share)});
+      wend::Vec2<double> const wish = (scene.goal - scene.pose.position).normalized() * static_cast<double>(speed);
+      auto const all = constraints(scene);
+      auto const breaks = [&all](wend::Vec2<double> const& w) {
+        return std::any_of(all.begin(), all.end(),
+                           [&w](Constraint const& c) { return c.normal.dot(w) < c.offset - 1.0e-5; });
+      };
+      kept.held_back += breaks(wish) ? 1 : 0;
+      if (breaks(u)) {
+        bool const allowed = std::isfinite(nearest_allowed(all, {0.0, 0.0}, 1.0e-6));
+        kept.overlooked += allowed ? 1 : 0;
+        if (!allowed) {
+          ++kept.no_way_out;
+          break;
+        }
+      }
+      auto const clear = [&scene](int d) {
+        return (scene.pose.position - scene.discs[d].centre).norm() - scene.discs[d].radius - scene.robot_radius -
+               static_cast<double>(margin);
+      };
+      std::array<double, scenes::disc_count> before{};
+      for (int d = 0; d < scene.discs.size(); ++d) {
+        before[static_cast<std::size_t>(d)] = clear(d);
+      }
+      scene.pose.position += dt * u;
+      scene.discs = moved;
+      ++kept.steps;
+      for (int d = 0; d < scene.discs.size(); ++d) {
+        double const h = clear(d);
+        kept.least = std::min(kept.least, h);
+        kept.decay =
+            std::min(kept.decay, h - (1.0 - static_cast<double>(rate) * dt) * before[static_cast<std::size_t>(d)]);
+      }
+    }
+  }
+  return kept;
+}
+
+}  // namespace
+
+TEST_CASE("the filter solves the quadratic programme exactly, as a search of all candidates does") {
+  // Normals every way, and in bundles of nearly one direction, where lines cross far out or not at all.
+  Random random(4);
+  int bound = 0;
+  int infeasible = 0;
+  double worst = 0.0;
+  double worst_breach = 0.0;
+  for (int k = 0; k < 30'000; ++k) {
+    scenes::Scene<double> scene = random_scene(random, -0.05, true);
+    if (k % 3 > 0) {
+      scenes::Scene<double> bundle;
+      bundle.robot_radius = scene.robot_radius;
+      double const spread = k % 3 == 1 ? 1.0e-4 : 0.0;
+      for (int i = 0; i < scene.discs.size(); ++i) {
+        double const bearing = 2.1 * (i % 2) + random.between(-spread, spread);
+        double const far = scene.discs[i].centre.norm();
+        wend::Vec2<double> const& v = scene.discs.velocities()[i];
+        bundle.put(far * std::cos(bearing), far * std::sin(bearing), scene.discs[i].radius, v.x(), v.y());
+      }
+      scene.discs = bundle.discs;
+    }
+    double const angle = random.between(-3.2, 3.2);
+    told const field{static_cast<float>(std::cos(angle)), static_cast<float>(std::sin(angle)),
+                     static_cast<float>(random.between(0.0, 1.0))};
+    auto const wanted = scenes::answer(field, scene);
+    wend::Vec2<double> const wish = velocity(wanted);
+    auto const all = constraints(scene);
+    double const expected = nearest_allowed(all, wish, 0.0);
+    auto const course = scenes::answer(wend::kept_clear(field, speed, rate, margin), scene);
+    wend::Vec2<double> const found = velocity(course);
+    if (std::isfinite(expected)) {
+      double breach = 0.0;
+      for (Constraint const& c : all) {
+        breach = std::max(breach, c.offset - c.normal.dot(found));
+      }
+      worst_breach = std::max(worst_breach, breach);
+      worst = std::max(worst, std::abs((found - wish).norm() - expected));
+      bound += expected > 1.0e-9 ? 1 : 0;
+    } else {
+      ++infeasible;
+    }
+    CHECK((course.confidence == 0.0 || course.confidence == wanted.confidence));  // of the velocity, not of its length
+  }
+  CHECK(worst < 1.0e-9);  // the candidates are taken for allowed to 1e-10
+  CHECK(worst_breach < 1.0e-9);
+  CHECK(bound > 5000);
+  CHECK(infeasible > 200);
+}
+
+TEST_CASE_TEMPLATE("the set is kept for a million steps, among discs that stand and discs that move", S, float,
+                   double) {
+  // Where all discs have one velocity there is always a velocity that is allowed, namely theirs: here nothing may give
+  // up. Where one moves among others there may be none, which is asked by other means than the filter's.
+  constexpr int steps = std::is_same_v<S, double> ? 170'000 : 30'000;
+  // Metres. Parameters are in single precision. In single precision positions are too: discs that drift get 55 m away,
+  // where machine and disc are each off by up to 1.9e-6 (half a unit in the last place) in x and in y.
+  double const rounding = std::is_same_v<S, double> ? 1.0e-7 : 6.0e-6;
+  int in_all = 0;
+  for (Discs const kind : {Discs::stand, Discs::drift_together, Discs::one_moves}) {
+    // Ticks up to 1 / rate: where the velocity is held for as long as that, h may fall to 0 in one of them.
+    for (double const dt : {0.1, 0.5}) {
+      Kept const kept = drive<S>(filtered, kind, dt, steps, 3);
+      CAPTURE(static_cast<int>(kind));
+      CAPTURE(dt);
+      CHECK(kept.least > -rounding);
+      CHECK(kept.decay > -rounding);
+      CHECK(kept.overlooked == 0);
+      CHECK(kept.held_back > kept.steps / 20);
+      CHECK((kind == Discs::one_moves || kept.no_way_out == 0));
+      in_all += kept.steps;
+    }
+  }
+  CHECK(in_all >= (std::is_same_v<S, double> ? 1'000'000 : 180'000));
+}
+
+TEST_CASE("without the filter, and with ticks longer than 1 / rate, the set is left") {
+  Kept const unfiltered = drive<double>(wend::toward_goal{}, Discs::stand, 0.1, 20'000, 3);
+  CHECK(unfiltered.least < -0.1);
+  CHECK(unfiltered.overlooked > 1000);
+  // The condition is sharp: straight at a disc 0.1 m off, 1 s at 0.2 m/s, with rate 2 / s.
+  scenes::Scene<double> scene;
+  scene.goal = {3.0, 0.0};
+  scene.put(0.2 + 0.3 + static_cast<double>(margin) + 0.1, 0.0, 0.3);
+  wend::Vec2<double> const u = velocity(scenes::answer(filtered, scene));
+  CHECK(u.x() == doctest::Approx(0.2).epsilon(1.0e-6));
+  CHECK(u.y() == 0.0);
+  CHECK(0.1 - 0.5 * u.x() == doctest::Approx(0.0).scale(1.0).epsilon(1.0e-6));
+  CHECK(0.1 - 1.0 * u.x() < -0.09);
 }
 
 TEST_CASE("no opinion wants to stand, and is heard only where standing is not allowed") {

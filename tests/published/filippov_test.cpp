@@ -33,6 +33,18 @@ scenes::Scene<double> scene_at(double bearing, double clearance) {
 
 wend::Vec2<double> velocity(wend::Course<double> const& course) { return course.direction * course.confidence; }
 
+// A field that is told what to want.
+struct told {
+  wend::Parameter x;
+  wend::Parameter y;
+  wend::Parameter confidence = 1.0F;
+  wend::Parameter speed_share = 1.0F;
+  template <wend::Number S, int N>
+  [[nodiscard]] constexpr wend::Course<S> operator()(wend::Percept<S, N> const&) const noexcept {
+    return wend::course_along(wend::Vec2<S>(S(x), S(y)), S(confidence), S(speed_share));
+  }
+};
+
 }  // namespace
 
 TEST_CASE("in the layer the motion is Filippov's, along the disc") {
@@ -49,6 +61,57 @@ TEST_CASE("in the layer the motion is Filippov's, along the disc") {
     wend::Vec2<double> const found = velocity(scenes::answer(along, scene));
     CHECK((found - expected).norm() < 1.0e-12);
     CHECK(std::abs(found.dot(normal)) < 1.0e-12);  // tangent
+  }
+}
+
+TEST_CASE("a case worked by hand") {
+  // Away is north. Below drives north, (0, 1), at half the speed; above (4/5, -3/5), at all of it: alpha = 1 / (1 +
+  // 3/5) = 5/8, and the motion 5/8 (4/5, -3/5) + 3/8 (0, 1) = (1/2, 0).
+  scenes::Scene<double> const scene = scene_at(1.5707963267948966, static_cast<double>(threshold));
+  constexpr auto by_hand = wend::sliding(threshold, 0.1F, told{0.0F, 1.0F, 1.0F, 0.5F}, told{4.0F, -3.0F});
+  wend::Course<double> const course = scenes::answer(by_hand, scene);
+  CHECK(velocity(course).x() == doctest::Approx(0.5).epsilon(1.0e-12));
+  CHECK(std::abs(velocity(course).y()) < 1.0e-12);
+  CHECK(course.speed_share == doctest::Approx(3.0 / 8.0 * 0.5 + 5.0 / 8.0).epsilon(1.0e-12));
+  // Below is half as sure: alpha = 1/2 / (1/2 + 3/5) = 5/11, and the motion (4/11, 0).
+  constexpr auto unsure = wend::sliding(threshold, 0.1F, told{0.0F, 1.0F, 0.5F}, told{4.0F, -3.0F});
+  CHECK(velocity(scenes::answer(unsure, scene)).x() == doctest::Approx(4.0 / 11.0).epsilon(1.0e-12));
+  CHECK(std::abs(velocity(scenes::answer(unsure, scene)).y()) < 1.0e-12);
+  // Above is a third as sure: alpha = 1 / (1 + 1/5) = 5/6, and the motion 5/6 (4/15, -1/5) + 1/6 (0, 1) = (2/9, 0).
+  constexpr auto faint = wend::sliding(threshold, 0.1F, told{0.0F, 1.0F}, told{4.0F, -3.0F, 1.0F / 3.0F});
+  CHECK(velocity(scenes::answer(faint, scene)).x() == doctest::Approx(2.0 / 9.0).epsilon(1.0e-6));
+  CHECK(std::abs(velocity(scenes::answer(faint, scene)).y()) < 1.0e-7);
+}
+
+TEST_CASE("off the middle of the layer the motion leans back to it, and out of the layer the side decides") {
+  // Below drives north and east, (3/5, 4/5), above south, (0, -1): alpha = 4/5 / (4/5 + 1) = 4/9; or below hardly out,
+  // (12/13, 5/13): alpha = 5/18; or above hardly in, (12/13, -5/13): alpha = 13/18. So neither alpha is 0 or 1 where
+  // the layer ends.
+  struct Pair {
+    told below;
+    told above;
+    double alpha;
+  };
+  for (Pair const& pair : {Pair{{3.0F, 4.0F}, {0.0F, -1.0F}, 4.0 / 9.0}, Pair{{12.0F, 5.0F}, {0.0F, -1.0F}, 5.0 / 18.0},
+                           Pair{{0.0F, 1.0F}, {12.0F, -5.0F}, 13.0 / 18.0}}) {
+    auto const policy = wend::sliding(threshold, 0.1F, pair.below, pair.above);
+    double const width = static_cast<double>(0.1F);
+    for (int tenths = -7; tenths <= 7; ++tenths) {
+      if (std::abs(tenths) == 5) {
+        continue;  // the very edge of the layer
+      }
+      CAPTURE(pair.alpha);
+      double const off = tenths / 10.0;
+      auto const scene = scene_at(1.5707963267948966, static_cast<double>(threshold) + off * width);
+      bool const inside = std::abs(tenths) < 5;
+      double const alpha = inside ? std::clamp(pair.alpha + off, 0.0, 1.0) : off < 0.0 ? 0.0 : 1.0;
+      wend::Vec2<double> const expected = (1.0 - alpha) * velocity(scenes::answer(pair.below, scene)) +
+                                          alpha * velocity(scenes::answer(pair.above, scene));
+      wend::Vec2<double> const found = velocity(scenes::answer(policy, scene));
+      CAPTURE(off);
+      CHECK((found - expected).norm() < 1.0e-12);
+      CHECK(found.y() * off <= 1.0e-12);  // never farther out
+    }
   }
 }
 
@@ -119,6 +182,6 @@ TEST_CASE("two that are exactly opposed cancel in the layer, and there is no opi
   scenes::Scene<double> empty;
   empty.goal = {1.0, 0.0};
   CHECK(scenes::answer(along, empty).direction.x() == 1.0);  // no disc: far over the threshold
-  scene.pose.position = {0.0, 0.0};                           // at the centre: the goal's field has the say of none
+  scene.pose.position = {0.0, 0.0};  // at the centre: the goal's field has the say of none
   CHECK(scenes::answer(along, scene).confidence == 0.0);
 }

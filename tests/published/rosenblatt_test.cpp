@@ -20,9 +20,10 @@ struct told {
   wend::Parameter x;
   wend::Parameter y;
   wend::Parameter confidence = 1.0F;
+  wend::Parameter speed_share = 1.0F;
   template <wend::Number S, int N>
   [[nodiscard]] constexpr wend::Course<S> operator()(wend::Percept<S, N> const&) const noexcept {
-    return wend::course_along(wend::Vec2<S>(S(x), S(y)), S(confidence));
+    return wend::course_along(wend::Vec2<S>(S(x), S(y)), S(confidence), S(speed_share));
   }
 };
 
@@ -36,14 +37,15 @@ TEST_CASE("the candidate with the most votes wins, counted by angles") {
   std::uniform_real_distribution<float> any(-1.0F, 1.0F);
   std::uniform_real_distribution<float> sure(0.1F, 1.0F);
   for (int k = 0; k < 500; ++k) {
-    std::array<told, 3> const fields{{{any(random), any(random), sure(random)},
-                                      {any(random), any(random), sure(random)},
-                                      {any(random), any(random), sure(random)}}};
+    std::array<told, 3> const fields{{{any(random), any(random), sure(random), sure(random)},
+                                      {any(random), any(random), sure(random), sure(random)},
+                                      {any(random), any(random), sure(random), sure(random)}}};
     std::array<float, 3> const weights{sure(random), sure(random), sure(random)};
     double const nose = 3.0 * static_cast<double>(any(random));
     scenes::Scene<double> scene;
     scene.pose.heading = {std::cos(nose), std::sin(nose)};
     std::array<double, count> votes{};
+    std::array<double, count> speeds{};  // shares of the speed, each times its vote
     double possible = 0.0;
     for (std::size_t f = 0; f < 3; ++f) {
       possible += static_cast<double>(weights[f]);
@@ -51,7 +53,9 @@ TEST_CASE("the candidate with the most votes wins, counted by angles") {
       for (std::size_t c = 0; c < count; ++c) {
         double const rating =
             std::pow((1.0 + std::cos(nose + 2.0 * pi * static_cast<double>(c) / count - wants)) / 2.0, 4);
-        votes[c] += static_cast<double>(weights[f]) * static_cast<double>(fields[f].confidence) * rating;
+        double const vote = static_cast<double>(weights[f]) * static_cast<double>(fields[f].confidence) * rating;
+        votes[c] += vote;
+        speeds[c] += vote * static_cast<double>(fields[f].speed_share);
       }
     }
     std::size_t best = 0;
@@ -65,6 +69,7 @@ TEST_CASE("the candidate with the most votes wins, counted by angles") {
     double const angle = nose + 2.0 * pi * static_cast<double>(best) / count;
     CHECK((course.direction - wend::Vec2<double>(std::cos(angle), std::sin(angle))).norm() < 1e-6);
     CHECK(course.confidence == doctest::Approx(votes[best] / possible).epsilon(1e-6));
+    CHECK(course.speed_share == doctest::Approx(speeds[best] / votes[best]).epsilon(1e-6));
   }
 }
 
@@ -85,8 +90,30 @@ TEST_CASE("without an opinion among them there is none, and a tie goes to the no
   scenes::Scene<double> const scene;
   told const none{0.0F, 0.0F};
   CHECK(scenes::answer(wend::vote<8>(wend::share(1.0F, none), wend::share(2.0F, none)), scene).confidence == 0.0);
+  scenes::Scene<double> noseless;  // a heading of no direction has no candidates
+  noseless.pose.heading = {0.0, 0.0};
+  CHECK(scenes::answer(wend::vote<8>(wend::share(1.0F, told{1.0F, 0.0F})), noseless).confidence == 0.0);
+  CHECK(scenes::answer(wend::vote<8>(wend::share(0.0F, told{1.0F, 0.0F})), scene).confidence == 0.0);  // nothing weighs
   told const left{0.0F, 1.0F};
   told const right{0.0F, -1.0F};
   CHECK(scenes::answer(wend::vote<4>(wend::share(1.0F, left), wend::share(1.0F, right)), scene).direction.y() ==
         doctest::Approx(1.0));
+}
+
+TEST_CASE("the candidates stand evenly all round, from the nose outwards, left before right") {
+  auto const& even = decltype(wend::vote<4>(wend::share(1.0F, told{})))::candidates;
+  auto const& odd = decltype(wend::vote<5>(wend::share(1.0F, told{})))::candidates;
+  auto const degrees = [](wend::Bearing const& b) {
+    return std::atan2(static_cast<double>(b.y), static_cast<double>(b.x)) * 180.0 / pi;
+  };
+  auto const near = [](double angle) { return doctest::Approx(angle).epsilon(1.0e-4); };
+  CHECK(degrees(even[0]) == 0.0);
+  CHECK(degrees(even[1]) == near(90.0));
+  CHECK(degrees(even[2]) == near(-90.0));
+  CHECK(std::abs(degrees(even[3])) == near(180.0));
+  CHECK(degrees(odd[0]) == 0.0);
+  CHECK(degrees(odd[1]) == near(72.0));
+  CHECK(degrees(odd[2]) == near(-72.0));
+  CHECK(degrees(odd[3]) == near(144.0));
+  CHECK(degrees(odd[4]) == near(-144.0));
 }

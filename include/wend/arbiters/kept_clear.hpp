@@ -4,8 +4,18 @@
 
 #include "wend/field.hpp"
 #include "wend/half_planes.hpp"
+#include "wend/promise.hpp"
 
 namespace wend::inline v0 {
+
+namespace detail {
+
+// Called only by a constant that must not be one. With a speed of 0 whatever the field wants would count as standing,
+// which is allowed, and pass: there would be no filter.
+inline void wend_kept_clear_needs_a_speed_over_zero() noexcept {}
+inline void wend_kept_clear_needs_a_rate_of_zero_or_more() noexcept {}
+
+}  // namespace detail
 
 /// A control-barrier filter (Ames, Xu, Grizzle and Tabuada 2017, IEEE Trans. Automatic Control 62(8), as a quadratic
 /// programme) for a machine that follows its course at once. With h the clearance less `margin`, every disc allows the
@@ -71,11 +81,14 @@ struct kept_clear_field {
 };
 
 /// kept_clear(toward_goal{}, 0.6F): what the field wants, as far as it keeps 5 cm clear of every disc. `speed` in
-/// metres a second, over 0; `rate` in 1/s, at most one over the time between ticks; `margin` in metres.
+/// metres a second, over 0; `rate` in 1/s, from 0 (no nearer to any disc, ever) to one over the time between ticks;
+/// `margin` in metres.
 template <typename Field>
 [[nodiscard]] constexpr kept_clear_field<Field> kept_clear(Field field, Parameter speed, Parameter rate = 2.0F,
                                                            Parameter margin = 0.05F) noexcept {
   detail::check_field<Field, float>();
+  detail::promise(speed > 0.0F, detail::wend_kept_clear_needs_a_speed_over_zero);
+  detail::promise(rate >= 0.0F, detail::wend_kept_clear_needs_a_rate_of_zero_or_more);
   return {field, speed, rate, margin};
 }
 
