@@ -100,8 +100,7 @@ TEST_CASE("downhill ends on a goal that is out of the influence of every disc") 
   }
 }
 
-// --- Their cure: repulsion weighted with d^n
-// ---------------------------------------------------------------------------
+// --- Their cure: repulsion weighted with d^n ------------------------------------------------------------------------
 
 namespace {
 
@@ -154,10 +153,25 @@ TEST_CASE("with the distance to the goal as a weight, downhill ends on the goal,
       }
       CHECK(wend::length(scene.pose.position) < 1.0e-3);
     }
-    // And around the goal everything lies higher than it.
-    double const disc_x = scene.discs[0].centre.x();
-    for (double angle = 0.0; angle < 6.3; angle += 0.1) {
-      CHECK(weighted_potential({0.05 * std::cos(angle), 0.05 * std::sin(angle)}, disc_x, 2) > 0.0);
+  }
+}
+
+TEST_CASE("around a goal beside a disc the weighted force leads back to it from every side, the plain one does not") {
+  // On a circle of radius d the pull is d, and the push d^n eta (1/rho - 1/rho0) / rho^2: for n of 2 or more it is the
+  // smaller one near the goal; for n = 0 it is not.
+  double const d = 1.0e-3;
+  for (double const clearance : {0.1, 0.3, 0.5}) {
+    scenes::Scene<double> scene = goal_before_a_disc(clearance);
+    for (int const power : {0, 2, 3, 4}) {
+      int homeward = 0;
+      for (int i = 0; i < 64; ++i) {
+        double const angle = 0.09817477042468103 * i;
+        scene.pose.position = {d * std::cos(angle), d * std::sin(angle)};
+        homeward += wend::dot(weighted(power).force(scene.percept()).sum, scene.pose.position) < 0.0 ? 1 : 0;
+      }
+      CAPTURE(clearance);
+      CAPTURE(power);
+      CHECK((homeward == 64) == (power >= 2));
     }
   }
 }

@@ -38,29 +38,11 @@ struct potential_field {
   [[nodiscard]] constexpr Force<S> force(Percept<S, N> const& percept) const noexcept {
     S const distance = percept.goal_distance;
     S const pull = S(attraction) * select(distance > S(conic_beyond), S(conic_beyond), distance);
-    S weight = S(1.0F);  // d^n
-    S slope = S(0.0F);  // n d^(n-1)
-    for (int i = 0; i < goal_power && i < 4; ++i) {
-      slope = slope * distance + weight;
-      weight = weight * distance;
-    }
-    // Divided in S: the quotient of two Parameters would leave a push at the edge of the influence in double.
-    S const edge = S(1.0F) / S(influence);
     Force<S> total{scaled(percept.goal_direction, pull), pull};
-    for (Disc<S> const& disc : percept.discs) {
-      Polar<S> const away = polar(Vec2<S>(percept.pose.position - disc.centre));
-      S const rho = greatest(S(away.length - disc.radius - percept.robot_radius), S(closest));
-      S const push = S(repulsion) * (S(1.0F) / rho - edge) / squared(rho);
-      S const near = select(rho < S(influence), push, S(0.0F));
-      S const felt = goal_power > 0 ? S(near * weight) : near;
-      total.sum = total.sum + scaled(away.direction, felt);
-      total.sum_of_sizes = total.sum_of_sizes + felt;
-      if (goal_power > 0) {
-        S const excess = select(rho < S(influence), S(S(1.0F) / rho - edge), S(0.0F));
-        S const homeward = S(0.5F) * S(repulsion) * squared(excess) * slope;
-        total.sum = total.sum + scaled(percept.goal_direction, homeward);
-        total.sum_of_sizes = total.sum_of_sizes + homeward;
-      }
+    if (goal_power > 0) {
+      add_pushes<true>(percept, total);
+    } else {
+      add_pushes<false>(percept, total);
     }
     return total;
   }
@@ -72,6 +54,39 @@ struct potential_field {
     Polar<S> const way = polar(total.sum);
     S const share = way.length / select(way.length > S(0.0F), total.sum_of_sizes, S(1.0F));
     return course_along(way, least(share, S(1.0F)));
+  }
+
+ private:
+  // Apart for the weight, so that Khatib's own pays nothing for it a disc.
+  template <bool weighted, Number S, int N>
+  constexpr void add_pushes(Percept<S, N> const& percept, Force<S>& total) const noexcept {
+    [[maybe_unused]] S weight = S(1.0F);  // d^n
+    [[maybe_unused]] S slope = S(0.0F);  // n d^(n-1)
+    if constexpr (weighted) {
+      for (int i = 0; i < goal_power && i < 4; ++i) {
+        slope = slope * percept.goal_distance + weight;
+        weight = weight * percept.goal_distance;
+      }
+    }
+    // Divided in S: the quotient of two Parameters would leave a push at the edge of the influence in double.
+    S const edge = S(1.0F) / S(influence);
+    for (Disc<S> const& disc : percept.discs) {
+      Polar<S> const away = polar(Vec2<S>(percept.pose.position - disc.centre));
+      S const rho = greatest(S(away.length - disc.radius - percept.robot_radius), S(closest));
+      S const push = S(repulsion) * (S(1.0F) / rho - edge) / squared(rho);
+      S felt = select(rho < S(influence), push, S(0.0F));
+      if constexpr (weighted) {
+        felt = felt * weight;
+      }
+      total.sum = total.sum + scaled(away.direction, felt);
+      total.sum_of_sizes = total.sum_of_sizes + felt;
+      if constexpr (weighted) {
+        S const excess = select(rho < S(influence), S(S(1.0F) / rho - edge), S(0.0F));
+        S const homeward = S(0.5F) * S(repulsion) * squared(excess) * slope;
+        total.sum = total.sum + scaled(percept.goal_direction, homeward);
+        total.sum_of_sizes = total.sum_of_sizes + homeward;
+      }
+    }
   }
 };
 
