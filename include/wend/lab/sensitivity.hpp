@@ -4,8 +4,6 @@
 #include <algorithm>
 #include <cmath>
 #include <cstddef>
-#include <cstring>
-#include <functional>
 #include <iterator>
 #include <limits>
 #include <span>
@@ -15,23 +13,19 @@
 #include <vector>
 
 #include "wend/lab/dual.hpp"
+#include "wend/lab/knob.hpp"
 #include "wend/lab/simulate.hpp"
 #include "wend/lab/world.hpp"
 #include "wend/loop.hpp"
 
 namespace wend::inline v0::lab {
 
-/// A parameter to turn: its name, and where it is in the loop object that is asked about.
-struct Knob {
-  std::string name;
-  Parameter const* at;
-};
-
-/// Makes up to N parameters the independent variables of Dual<N> for this thread, as long as it lives: parameter k then
-/// has slope 1 in place k wherever a policy converts it to a number. What was turned before comes back afterwards.
+/// Makes up to N parameters the independent variables of `Dual<N>` for this thread, as long as it lives: parameter k
+/// then has slope 1 in place k wherever a policy converts it to a number. What was turned before comes back afterwards.
 template <int N>
 class TurnedKnobs {
  public:
+  /// Throws std::invalid_argument for more than N knobs.
   explicit TurnedKnobs(std::span<Knob const> knobs) : before_(Dual<N>::knobs) {
     if (knobs.size() > before_.size()) {
       throw std::invalid_argument("wend: TurnedKnobs: " + std::to_string(knobs.size()) + " knobs do not fit a Dual<" +
@@ -40,8 +34,11 @@ class TurnedKnobs {
     Dual<N>::knobs.fill(nullptr);
     std::transform(knobs.begin(), knobs.end(), Dual<N>::knobs.begin(), [](Knob const& knob) { return knob.at; });
   }
+  /// What was turned before must come back once.
   TurnedKnobs(TurnedKnobs const&) = delete;
+  /// Neither is it assigned.
   TurnedKnobs& operator=(TurnedKnobs const&) = delete;
+  /// Brings back what was turned before, for the thread that it runs in.
   ~TurnedKnobs() { Dual<N>::knobs = before_; }
 
  private:
@@ -56,9 +53,9 @@ class TurnedKnobs {
 /// The thresholds of a guard act through the tick on which they switch and through nothing else. So their slopes are
 /// exactly 0 (almost everywhere), and the differences are all there is to go by.
 struct KnobEffect {
-  std::string name;
-  double value = 0.0;
-  double step = 0.0;
+  std::string name;  ///< of the knob
+  double value = 0.0;  ///< in the knob's unit, as it stands
+  double step = 0.0;  ///< in the knob's unit, over 0
   double clearance_slope = 0.0;  ///< metres a unit
   double clearance_difference = 0.0;  ///< metres a unit
   double time_slope = 0.0;  ///< seconds a unit; not-a-number when the run does not arrive
@@ -67,12 +64,13 @@ struct KnobEffect {
 
 /// A run, and how it depends on the knobs.
 struct Sensitivity {
-  bool arrived = false;
+  bool arrived = false;  ///< whether it did, in the loop's own radius
   double least_clearance = 0.0;  ///< metres, from the machine's edge to a disc's, over all ticks; negative in contact
   double time = 0.0;  ///< seconds to the loop's arrival radius; not-a-number when it does not arrive
-  std::vector<KnobEffect> knobs;
+  std::vector<KnobEffect> knobs;  ///< one a knob, in the order given
 };
 
+/// How a run is driven, and how far knobs are turned.
 struct SensitivityOptions {
   double period = 0.05;  ///< seconds between ticks
   double step_share = 0.01;  ///< of a knob's value, for the differences
@@ -82,7 +80,7 @@ struct SensitivityOptions {
 /// What one run comes to, on a number that may carry derivatives.
 template <typename S>
 struct ExactRun {
-  bool arrived = false;
+  bool arrived = false;  ///< whether the loop said so
   S least_clearance{static_cast<double>(far_away)};  ///< metres, over all ticks
   S time{0.0};  ///< seconds; where the run stopped when it did not arrive
 };
@@ -163,51 +161,24 @@ template <typename S, int Capacity = 32, typename Loop>
   return run;
 }
 
-namespace detail {
-
-// A loop with one parameter changed: the place of the parameter in the object is the same in a copy of it.
-template <typename Loop>
-[[nodiscard]] Loop with_parameter(Loop const& loop, std::size_t place, Parameter value) {
-  Loop other = loop;
-  std::memcpy(reinterpret_cast<std::byte*>(&other) + place, &value, sizeof value);
-  return other;
-}
-
-// Bytes from the loop's start to a knob. Throws where the knob is not inside.
-template <typename Loop>
-[[nodiscard]] std::size_t place_of(Knob const& knob, Loop const& loop) {
-  auto const* const start = reinterpret_cast<std::byte const*>(&loop);
-  auto const* const at = reinterpret_cast<std::byte const*>(knob.at);
-  std::less<> const before;
-  if (at == nullptr || before(at, start) || before(start + sizeof loop, at + sizeof(Parameter))) {
-    throw std::invalid_argument("wend: sensitivity: the knob \"" + knob.name +
-                                "\" is not inside the loop that is asked about; write {\"" + knob.name +
-                                "\", &loop.pace.top_speed}, say, with that very loop and not a copy");
-  }
-  return static_cast<std::size_t>(at - start);
-}
-
-}  // namespace detail
-
 /// How the least clearance and the time to the goal of one exact run (see exact_run, and its exceptions) depend on
 /// parameters of the loop. Each knob points into `loop` itself:
 ///
-///   Knob const knobs[] = {{"top speed", &loop.pace.top_speed}, {"ramp high", &loop.policy.weight.high}};
+///     Knob const knobs[] = {{"top speed", &loop.pace.top_speed}, {"ramp high", &loop.policy.weight.high}};
 ///
 /// throws std::invalid_argument for one that does not. Any number of knobs, taken N at a time.
 template <int N = 8, int Capacity = 32, typename Loop>
 [[nodiscard]] Sensitivity sensitivity(Loop const& loop, World const& world, Trip const& trip,
                                       std::span<Knob const> knobs, SensitivityOptions const& options = {}) {
-  static_assert(std::is_trivially_copyable_v<Loop>,
-                "wend: sensitivity: a loop is parameters only, so it can be copied");
   constexpr double none = std::numeric_limits<double>::quiet_NaN();
   ExactRun<double> const plain = exact_run<double, Capacity>(loop, world, trip, options.period);
   Sensitivity result{plain.arrived, plain.least_clearance, plain.arrived ? plain.time : none, {}};
   for (std::size_t first = 0; first < knobs.size(); first += static_cast<std::size_t>(N)) {
     auto const some = knobs.subspan(first, std::min(knobs.size() - first, static_cast<std::size_t>(N)));
     std::vector<std::size_t> places;
-    std::transform(some.begin(), some.end(), std::back_inserter(places),
-                   [&loop](Knob const& knob) { return detail::place_of(knob, loop); });
+    std::transform(some.begin(), some.end(), std::back_inserter(places), [&loop](Knob const& knob) {
+      return detail::place_in("sensitivity", loop, knob.at, "the knob \"" + knob.name + "\"");
+    });
     TurnedKnobs<N> const turned(some);
     auto const run = exact_run<Dual<N>, Capacity>(loop, world, trip, options.period);
     for (std::size_t k = 0; k < some.size(); ++k) {
@@ -215,10 +186,12 @@ template <int N = 8, int Capacity = 32, typename Loop>
       double const step = std::max(options.step_share * std::abs(static_cast<double>(value)), options.least_step);
       auto const up = static_cast<Parameter>(static_cast<double>(value) + step);
       auto const down = static_cast<Parameter>(static_cast<double>(value) - step);
-      auto const after =
-          exact_run<double, Capacity>(detail::with_parameter(loop, places[k], up), world, trip, options.period);
-      auto const before =
-          exact_run<double, Capacity>(detail::with_parameter(loop, places[k], down), world, trip, options.period);
+      auto const with = [&](Parameter turned_to) {
+        return exact_run<double, Capacity>(detail::with_values(loop, {places[k]}, {turned_to}), world, trip,
+                                           options.period);
+      };
+      auto const after = with(up);
+      auto const before = with(down);
       double const apart = static_cast<double>(up) - static_cast<double>(down);
       int const place = static_cast<int>(k);
       result.knobs.push_back({some[k].name, static_cast<double>(value), 0.5 * apart, run.least_clearance.slope(place),
