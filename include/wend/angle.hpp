@@ -84,8 +84,8 @@ template <std::floating_point S>
 
 /// Cosine and sine of one angle: a unit vector in a form that can be a constant.
 struct Bearing {
-  Parameter x = 1.0F;
-  Parameter y = 0.0F;
+  Parameter x = 1.0F;  ///< the cosine
+  Parameter y = 0.0F;  ///< the sine; positive to the left
 };
 
 /// The unit vector at an angle in radians, worked out by the compiler, so that the bits do not depend on a C library.

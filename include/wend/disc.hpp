@@ -17,8 +17,8 @@ inline constexpr Parameter far_away = 1.0e6F;
 /// A disc: centre in the frame in use, and radius; metres.
 template <Number S>
 struct Disc {
-  Vec2<S> centre{S(far_away), S(0.0F)};
-  S radius{S(0.0F)};
+  Vec2<S> centre{S(far_away), S(0.0F)};  ///< metres; far away, so that it touches nothing, unless given
+  S radius{S(0.0F)};  ///< metres, 0 or more
 };
 
 /// Distance from a point to the edge of a disc; negative inside.
@@ -54,23 +54,30 @@ class DiscSet {
     insert(disc, viewpoint, [](int, mask_t<S> const&) noexcept {});
   }
 
+  /// How many discs there are, up to the capacity.
   [[nodiscard]] int size() const noexcept { return size_; }
+  /// How many discs there is room for.
   [[nodiscard]] static constexpr int capacity() noexcept { return Capacity; }
   /// How many discs did not fit.
   [[nodiscard]] int dropped() const noexcept { return dropped_; }
   /// Whether a disc came in that cannot be one.
   [[nodiscard]] mask_t<S> rejected() const noexcept { return rejected_; }
 
+  /// Disc i, in [0, size()), in no particular order once the set has been full.
   [[nodiscard]] Disc<S> const& operator[](int i) const noexcept {
     WEND_ASSERT(i >= 0 && i < size_);
     return discs_[static_cast<std::size_t>(i)];
   }
+  /// The first disc, for a loop over all.
   [[nodiscard]] Disc<S> const* begin() const noexcept { return discs_.data(); }
+  /// One past the last disc.
   [[nodiscard]] Disc<S> const* end() const noexcept { return discs_.data() + size_; }
 
  protected:
   // Adds a disc. What somebody keeps beside the discs goes along by `exchange(i, where)`: what belongs to place i and
   // what is carried change hands where the mask holds.
+  /// Adds a disc, for a set that keeps something beside each disc. `exchange(i, where)` is called for each place at
+  /// which what is kept beside place i and what is carried along have to change hands where the mask holds.
   template <typename Exchange>
   void insert(Disc<S> disc, Vec2<S> const& viewpoint, Exchange const& exchange) noexcept {
     mask_t<S> const sound = finite(disc.centre.x()) && finite(disc.centre.y()) && finite(disc.radius) &&
@@ -98,6 +105,7 @@ class DiscSet {
   }
 
   // A number among what somebody keeps beside the discs cannot be one.
+  /// Sets `rejected` where a number that is kept beside the discs cannot be one.
   void reject(mask_t<S> const& unsound) noexcept { rejected_ = rejected_ || unsound; }
 
  private:

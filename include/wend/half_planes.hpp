@@ -15,17 +15,20 @@ namespace wend::inline v0 {
 /// 1e6 of the origin.
 template <Number S>
 struct HalfPlane {
-  Vec2<S> normal{S(0.0F), S(0.0F)};
-  S offset{S(-1.0e6F)};
+  Vec2<S> normal{S(0.0F), S(0.0F)};  ///< unit vector into the half-plane
+  S offset{S(-1.0e6F)};  ///< of the edge from the origin along the normal; negative when the origin lies inside
 };
 
 /// Up to Capacity half-planes.
 template <Number S, int Capacity>
 struct HalfPlanes {
+  /// The first `count` of them count.
   std::array<HalfPlane<S>, static_cast<std::size_t>(Capacity)> planes{};
-  int count = 0;
+  int count = 0;  ///< in [0, Capacity]
 
+  /// Adds one half-plane. There has to be room for it: nothing is checked.
   constexpr void add(HalfPlane<S> const& plane) noexcept { planes[static_cast<std::size_t>(count++)] = plane; }
+  /// Half-plane i, in [0, count); nothing is checked.
   [[nodiscard]] constexpr HalfPlane<S> const& operator[](int i) const noexcept {
     return planes[static_cast<std::size_t>(i)];
   }
@@ -34,15 +37,15 @@ struct HalfPlanes {
 /// A point, and whether it is in all of the half-planes.
 template <Number S>
 struct InHalfPlanes {
-  Vec2<S> point;
-  mask_t<S> found;
+  Vec2<S> point;  ///< where `found` does not hold it means nothing
+  mask_t<S> found;  ///< whether there is a point in all of them
 };
 
 /// A point, and how far it is outside the half-plane that it misses by most; 0 where it is in all of them.
 template <Number S>
 struct LeastBreach {
-  Vec2<S> point;
-  S breach;
+  Vec2<S> point;  ///< in the disc; in the unit of the offsets
+  S breach;  ///< 0 or more, in the unit of the offsets
 };
 
 namespace detail {

@@ -40,8 +40,8 @@ template <PlainNumber S, typename Wheels, typename Body>
 /// What goes into a tick besides readings or discs. Pose and goal in one frame, metres; heading a unit vector.
 template <Number S>
 struct Situation {
-  Pose<S> pose;
-  Vec2<S> goal{S(0.0F), S(0.0F)};
+  Pose<S> pose;  ///< of the machine
+  Vec2<S> goal{S(0.0F), S(0.0F)};  ///< metres, in the frame of the pose
   S dt{S(0.05F)};  ///< seconds since the last tick
   S age{S(0.0F)};  ///< seconds since the oldest of readings and pose was measured
 };
@@ -71,23 +71,25 @@ struct SlewMemory<no_slew, Body, Owner> {
 template <typename Policy, typename Sensing = no_sensing, typename DriveType = DifferentialDrive,
           typename SteeringType = steering_t<DriveType>, typename SlewType = no_slew>
 struct Loop {
-  [[no_unique_address]] Policy policy;
-  [[no_unique_address]] Sensing sensing{};
-  DriveType drive{};
-  SteeringType steering{};
-  Pace pace{};
-  Freshness freshness{};
-  Progress progress{};
+  [[no_unique_address]] Policy policy;  ///< a heading field: the course
+  [[no_unique_address]] Sensing sensing{};  ///< from readings to discs, where the loop is given readings
+  DriveType drive{};  ///< from the body's motion to wheel rates, and back
+  SteeringType steering{};  ///< from a course to the body's motion
+  Pace pace{};  ///< the speed that is allowed: room to stop in
+  Freshness freshness{};  ///< how old readings may be
+  Progress progress{};  ///< when the machine counts as stuck
   Parameter robot_radius = 0.20F;  ///< metres, of the circle round the drive's reference point that holds the machine
   Parameter arrive_within = 0.15F;  ///< metres, from the robot's centre to the goal
   Parameter min_alive = 0.5F;  ///< share of the beams that must work
-  [[no_unique_address]] SlewType slew{};
+  [[no_unique_address]] SlewType slew{};  ///< limits on how fast the body's velocities change; none by default
 
+  /// All that changes from tick to tick.
   template <Number S>
   struct Memory {
-    [[no_unique_address]] detail::PlacedMemory<Policy, S, Loop, 0> policy;
-    Progress::Memory<S> progress;
-    [[no_unique_address]] detail::PlacedMemory<Sensing, S, Loop, 1> sensing;
+    [[no_unique_address]] detail::PlacedMemory<Policy, S, Loop, 0> policy;  ///< of the policy
+    Progress::Memory<S> progress;  ///< of the watch for being stuck
+    [[no_unique_address]] detail::PlacedMemory<Sensing, S, Loop, 1> sensing;  ///< of the sensing
+    /// Of the slew.
     [[no_unique_address]] typename detail::SlewMemory<SlewType, body_t<DriveType, S>, Loop>::type slew;
   };
   /// What a tick returns.

@@ -52,6 +52,7 @@ constexpr void for_each_member(T& a, U& b, F&& f) noexcept {
     f(a[i], b[i]);
   }
 }
+/// Of plain structs, with up to eight members each.
 template <typename T, typename U, typename F>
 constexpr void for_each_member(T& a, U& b, F&& f) noexcept {
   constexpr int count = detail::member_count<std::remove_const_t<T>>();

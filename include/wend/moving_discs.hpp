@@ -41,6 +41,7 @@ class MovingDiscSet : public DiscSet<S, Capacity> {
 
   /// One velocity a disc, in the order of the discs.
   [[nodiscard]] Vec2<S> const* velocities() const noexcept { return velocities_.data(); }
+  /// Of disc i, in [0, size()): metres a second over the ground, along the axes of the frame in use.
   [[nodiscard]] Vec2<S> const& velocity(int i) const noexcept {
     WEND_ASSERT(i >= 0 && i < this->size());
     return velocities_[static_cast<std::size_t>(i)];

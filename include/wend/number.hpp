@@ -38,6 +38,7 @@ template <typename T>
   constexpr std::uint32_t exponent = 0x7f800000U;
   return (std::bit_cast<std::uint32_t>(x) & exponent) != exponent;
 }
+/// The same in double precision.
 [[nodiscard]] constexpr bool finite(double const& x) noexcept {
   constexpr std::uint64_t exponent = 0x7ff0000000000000U;
   return (std::bit_cast<std::uint64_t>(x) & exponent) != exponent;

@@ -15,9 +15,9 @@ namespace wend::inline v0 {
 /// it was made from, which must outlive it.
 template <Number S, int Capacity>
 struct Percept {
-  Pose<S> pose;
-  Vec2<S> goal;
-  DiscSet<S, Capacity> const& discs;
+  Pose<S> pose;  ///< of the machine, in the frame of the percept
+  Vec2<S> goal;  ///< metres, in the same frame
+  DiscSet<S, Capacity> const& discs;  ///< in the same frame; not owned
   S robot_radius;  ///< metres
   S dt;            ///< seconds since the last tick, in [0, far_away]; 0 where what was given was not a number
 
@@ -131,6 +131,7 @@ template <Number S, int Capacity>
 /// A percept refers to its discs: give look a set that outlives it.
 template <Number S, int Capacity>
 Percept<S, Capacity> look(Pose<S> const&, Vec2<S> const&, DiscSet<S, Capacity> const&&, S, S) = delete;
+/// Nor one of discs that move.
 template <Number S, int Capacity>
 Percept<S, Capacity> look(Pose<S> const&, Vec2<S> const&, MovingDiscSet<S, Capacity> const&&, S, S) = delete;
 

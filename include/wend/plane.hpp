@@ -57,8 +57,8 @@ template <Number S>
 /// A vector taken apart: a unit direction and a length in the unit of the vector.
 template <Number S>
 struct Polar {
-  Vec2<S> direction;
-  S length;
+  Vec2<S> direction;  ///< unit, or (0, 0) where there is none
+  S length;  ///< in the unit of the vector; 0 or more
 };
 
 /// The length up to which a vector counts as none, on every number type: the square of anything longer is a normal
@@ -78,8 +78,8 @@ template <Number S>
 /// downstream needs a sine.
 template <Number S>
 struct Pose {
-  Vec2<S> position{S(0.0F), S(0.0F)};
-  Vec2<S> heading{S(1.0F), S(0.0F)};
+  Vec2<S> position{S(0.0F), S(0.0F)};  ///< metres
+  Vec2<S> heading{S(1.0F), S(0.0F)};  ///< unit vector along the nose; (1, 0) unless given
 };
 
 /// True where both components are.

@@ -19,10 +19,11 @@ inline void wend_share_needs_a_weight_of_zero_or_more() noexcept {}
 /// signal, low < high. 0 for a signal that is not a number.
 template <typename Signal>
 struct ramp_weight {
-  [[no_unique_address]] Signal signal;
-  Parameter low;
-  Parameter high;
+  [[no_unique_address]] Signal signal;  ///< what is looked at
+  Parameter low;  ///< in its unit: the weight is 0 from here down
+  Parameter high;  ///< in its unit, over `low`: the weight is 1 from here up
 
+  /// The weight, in [0, 1].
   template <Number S, int N>
   [[nodiscard]] constexpr S operator()(Percept<S, N> const& percept) const noexcept {
     S const per_unit = S(1.0F) / (S(high) - S(low));  // on S: as a Parameter its rounding would show in double
@@ -40,8 +41,9 @@ template <typename Signal>
 
 /// A constant weight.
 struct fixed_weight {
-  Parameter share;
+  Parameter share;  ///< the weight, in [0, 1]
 
+  /// The same weight whatever the percept.
   template <Number S, int N>
   [[nodiscard]] constexpr S operator()(Percept<S, N> const&) const noexcept {
     return S(share);
@@ -55,16 +57,18 @@ struct fixed_weight {
 /// is, whatever the confidences.
 template <typename Weight, typename Low, typename High>
 struct blended_field {
-  [[no_unique_address]] Weight weight;
-  [[no_unique_address]] Low low;
-  [[no_unique_address]] High high;
+  [[no_unique_address]] Weight weight;  ///< of `high`: a functor from a percept to [0, 1]
+  [[no_unique_address]] Low low;  ///< heard alone where the weight is 0
+  [[no_unique_address]] High high;  ///< heard alone where the weight is 1
 
+  /// What the two fields remember. Both are asked on every tick.
   template <Number S>
   struct Memory {
-    [[no_unique_address]] detail::PlacedMemory<Low, S, blended_field, 0> low;
-    [[no_unique_address]] detail::PlacedMemory<High, S, blended_field, 1> high;
+    [[no_unique_address]] detail::PlacedMemory<Low, S, blended_field, 0> low;  ///< of the low one
+    [[no_unique_address]] detail::PlacedMemory<High, S, blended_field, 1> high;  ///< of the high one
   };
 
+  /// The blend's course.
   template <Number S, int N>
   [[nodiscard]] constexpr Course<S> operator()(Percept<S, N> const& percept, Memory<S>& memory) const noexcept {
     S const w = weight(percept);
@@ -94,8 +98,8 @@ struct blended_field {
 /// A field with its share of a blend.
 template <typename Field>
 struct Share {
-  Parameter weight;
-  [[no_unique_address]] Field field;
+  Parameter weight;  ///< 0 or more, relative to the other shares
+  [[no_unique_address]] Field field;  ///< whose courses get that weight
 };
 
 /// share(2.0F, toward_goal{}): weights count relative to each other; none may be negative, and not all zero.
@@ -121,6 +125,7 @@ template <typename A>
 [[nodiscard]] constexpr A blend(Share<A> a) noexcept {
   return a.field;
 }
+/// From two shares on: pairs nested to the right. Fields whose weights are all zero count half each.
 template <typename A, typename... Rest>
 [[nodiscard]] constexpr auto blend(Share<A> a, Share<Rest>... rest) noexcept {
   Parameter const others = (rest.weight + ...);

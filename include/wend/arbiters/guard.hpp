@@ -55,15 +55,17 @@ inline void wend_held_needs_a_dwell_of_zero_seconds_or_more() noexcept {}
 /// leaves the answer as it is.
 template <typename Signal>
 struct below_guard {
-  Signal signal;
-  Parameter enter;
-  Parameter leave;
+  Signal signal;  ///< what is compared
+  Parameter enter;  ///< in the signal's unit: yes from under it on
+  Parameter leave;  ///< in the signal's unit, at least `enter`: no from over it on
 
+  /// What the guard remembers.
   template <Number S>
   struct Memory {
-    mask_t<S> on{};
+    mask_t<S> on{};  ///< the last answer; no at first
   };
 
+  /// The answer of this tick.
   template <Number S, int N>
   [[nodiscard]] constexpr mask_t<S> operator()(Percept<S, N> const& percept, Memory<S>& memory) const noexcept {
     S const value = signal(percept);
@@ -75,15 +77,17 @@ struct below_guard {
 /// Yes once the signal is over `enter`, until it is under `leave`.
 template <typename Signal>
 struct above_guard {
-  Signal signal;
-  Parameter enter;
-  Parameter leave;
+  Signal signal;  ///< what is compared
+  Parameter enter;  ///< in the signal's unit: yes from over it on
+  Parameter leave;  ///< in the signal's unit, at most `enter`: no from under it on
 
+  /// What the guard remembers.
   template <Number S>
   struct Memory {
-    mask_t<S> on{};
+    mask_t<S> on{};  ///< the last answer; no at first
   };
 
+  /// The answer of this tick.
   template <Number S, int N>
   [[nodiscard]] constexpr mask_t<S> operator()(Percept<S, N> const& percept, Memory<S>& memory) const noexcept {
     S const value = signal(percept);
@@ -96,17 +100,19 @@ struct above_guard {
 /// once.
 template <typename Guard>
 struct held_guard {
-  [[no_unique_address]] Guard guard;
-  Parameter dwell;
+  [[no_unique_address]] Guard guard;  ///< whose answers are held
+  Parameter dwell;  ///< seconds, 0 or more, for which an answer stands at least
 
+  /// What the two remember.
   template <Number S>
   struct Memory {
-    [[no_unique_address]] detail::PlacedMemory<Guard, S, held_guard, 0> guard;
-    S since{S(0.0F)};
-    mask_t<S> started{};
-    mask_t<S> on{};
+    [[no_unique_address]] detail::PlacedMemory<Guard, S, held_guard, 0> guard;  ///< of the guard that is held
+    S since{S(0.0F)};  ///< seconds for which the answer has stood, up to far_away
+    mask_t<S> started{};  ///< whether it has answered before
+    mask_t<S> on{};  ///< the last answer
   };
 
+  /// The answer of this tick. The guard inside is asked every time, also while its answer cannot count.
   template <Number S, int N>
   [[nodiscard]] constexpr mask_t<S> operator()(Percept<S, N> const& percept, Memory<S>& memory) const noexcept {
     mask_t<S> const wanted = ask(guard, percept, memory.guard);
@@ -140,15 +146,17 @@ struct Or {
 /// Two guards joined. Both are asked on every tick, so that both keep their memory up to date.
 template <typename Join, typename A, typename B>
 struct joined_guard {
-  [[no_unique_address]] A a;
-  [[no_unique_address]] B b;
+  [[no_unique_address]] A a;  ///< asked first
+  [[no_unique_address]] B b;  ///< asked second
 
+  /// What the two guards remember.
   template <Number S>
   struct Memory {
-    [[no_unique_address]] detail::PlacedMemory<A, S, joined_guard, 0> a;
-    [[no_unique_address]] detail::PlacedMemory<B, S, joined_guard, 1> b;
+    [[no_unique_address]] detail::PlacedMemory<A, S, joined_guard, 0> a;  ///< of the first
+    [[no_unique_address]] detail::PlacedMemory<B, S, joined_guard, 1> b;  ///< of the second
   };
 
+  /// The answer of this tick.
   template <Number S, int N>
   [[nodiscard]] constexpr mask_t<S> operator()(Percept<S, N> const& percept, Memory<S>& memory) const noexcept {
     mask_t<S> const of_a = ask(a, percept, memory.a);
@@ -160,13 +168,15 @@ struct joined_guard {
 /// A guard turned around.
 template <typename Guard>
 struct negated_guard {
-  [[no_unique_address]] Guard guard;
+  [[no_unique_address]] Guard guard;  ///< whose answers are turned around
 
+  /// What the guard remembers.
   template <Number S>
   struct Memory {
-    [[no_unique_address]] detail::PlacedMemory<Guard, S, negated_guard, 0> guard;
+    [[no_unique_address]] detail::PlacedMemory<Guard, S, negated_guard, 0> guard;  ///< of the guard inside
   };
 
+  /// Yes when the guard inside says no.
   template <Number S, int N>
   [[nodiscard]] constexpr mask_t<S> operator()(Percept<S, N> const& percept, Memory<S>& memory) const noexcept {
     return !ask(guard, percept, memory.guard);
@@ -197,6 +207,7 @@ constexpr auto below(Parameter enter, Parameter leave) noexcept {
                 "wend: below needs the signal that is compared: below(clearance, 0.30F, 0.50F)");
   return below_guard<detail::NoSignal>{{}, enter, leave};
 }
+/// As below: no guard without a signal, so this only says what is missing.
 template <typename Nothing = void>
 constexpr auto above(Parameter enter, Parameter leave) noexcept {
   static_assert(!std::is_void_v<Nothing>,

@@ -33,18 +33,20 @@ template <typename A, typename B, Number S, int N, typename MemoryA, typename Me
 /// memory; the guard keeps its own.
 template <typename Guard, typename Inside, typename Outside>
 struct guarded_field {
-  [[no_unique_address]] Guard guard;
-  [[no_unique_address]] Inside inside;
-  [[no_unique_address]] Outside outside;
+  [[no_unique_address]] Guard guard;  ///< which of the two is heard
+  [[no_unique_address]] Inside inside;  ///< while it says yes
+  [[no_unique_address]] Outside outside;  ///< while it says no
 
+  /// What all three remember.
   template <Number S>
   struct Memory {
-    [[no_unique_address]] detail::PlacedMemory<Guard, S, guarded_field, 0> guard;
-    [[no_unique_address]] detail::PlacedMemory<Inside, S, guarded_field, 1> inside;
-    [[no_unique_address]] detail::PlacedMemory<Outside, S, guarded_field, 2> outside;
-    mask_t<S> is_inside{};
+    [[no_unique_address]] detail::PlacedMemory<Guard, S, guarded_field, 0> guard;  ///< of the guard
+    [[no_unique_address]] detail::PlacedMemory<Inside, S, guarded_field, 1> inside;  ///< fresh whenever it is entered
+    [[no_unique_address]] detail::PlacedMemory<Outside, S, guarded_field, 2> outside;  ///< fresh whenever it is entered
+    mask_t<S> is_inside{};  ///< what the guard said last; no at first
   };
 
+  /// The course of the one field that the guard lets be heard.
   template <Number S, int N>
   [[nodiscard]] constexpr Course<S> operator()(Percept<S, N> const& percept, Memory<S>& memory) const noexcept {
     mask_t<S> const now = ask(guard, percept, memory.guard);
@@ -60,6 +62,7 @@ struct guarded_field {
 
 /// No opinion, ever: what stands outside of only_when.
 struct no_opinion {
+  /// Direction (0, 0) and confidence 0, whatever the percept.
   template <Number S, int N>
   [[nodiscard]] constexpr Course<S> operator()(Percept<S, N> const&) const noexcept {
     return {};

@@ -20,7 +20,9 @@ inline void wend_kept_clear_needs_a_rate_of_zero_or_more() noexcept {}
 /// A control-barrier filter (Ames, Xu, Grizzle and Tabuada 2017, IEEE Trans. Automatic Control 62(8), as a quadratic
 /// programme) for a machine that follows its course at once. With h the clearance less `margin`, every disc allows the
 /// velocities u with
-///   n . (u - v) >= -rate * h        (n: unit, away from the disc; v: the disc's own velocity)
+///
+///     n . (u - v) >= -rate * h        (n: unit, away from the disc; v: the disc's own velocity)
+///
 /// and the filter takes, of those no faster than `speed`, the one nearest to what the field wants, which is its
 /// direction times its speed share times `speed`; exactly, for all discs at once. Where what it wants is allowed, its
 /// course passes through unchanged, to the last bit.
@@ -36,7 +38,7 @@ inline void wend_kept_clear_needs_a_rate_of_zero_or_more() noexcept {}
 /// discs, and N^3 / 6 where nothing is allowed.
 template <typename Field>
 struct kept_clear_field {
-  [[no_unique_address]] Field field;
+  [[no_unique_address]] Field field;  ///< what is filtered
   Parameter speed;   ///< metres a second: what the machine drives at most
   Parameter rate;    ///< 1/s
   Parameter margin;  ///< metres

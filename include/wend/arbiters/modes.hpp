@@ -40,7 +40,7 @@ template <std::size_t A, std::size_t B>
 /// A way out of a mode: to the mode called Target, once the guard says yes.
 template <ModeName Target, typename Guard>
 struct transition {
-  [[no_unique_address]] Guard guard;
+  [[no_unique_address]] Guard guard;  ///< asked on each tick in the mode it leads out of
   static constexpr auto target = Target;  ///< the name of the mode it leads to
 
   /// What the guard remembers.
@@ -104,8 +104,8 @@ constexpr void for_each_in(R const& things, [[maybe_unused]] M& memory, F const&
 /// A mode: a name, the field that is heard in it, and the ways out of it.
 template <ModeName Name, typename Field, typename Ways>
 struct mode_of {
-  [[no_unique_address]] Field field;
-  [[no_unique_address]] Ways ways;
+  [[no_unique_address]] Field field;  ///< heard while the mode is on
+  [[no_unique_address]] Ways ways;  ///< in order of rank
   static constexpr auto name = Name;  ///< unique among the modes of an automaton
 
   /// What field and guards remember while the mode is on.
@@ -162,7 +162,7 @@ consteval void check_modes() {
 /// modes remember; of several masks that are set, as no run of it leaves them, the first counts.
 template <typename... Modes>
 struct modes_field {
-  [[no_unique_address]] detail::Row<Modes...> modes;
+  [[no_unique_address]] detail::Row<Modes...> modes;  ///< the first is where it starts
 
   /// What the modes remember, and which of them is on.
   template <Number S>
@@ -257,8 +257,10 @@ struct modes_field {
   }
 };
 
-/// modes(mode<"going">(toward_goal{}, to<"passing">(below(clearance, 0.30F, 0.30F))),
-///       mode<"passing">(past_disc{}, to<"going">(above(clearance, 0.50F, 0.50F)))): starts in the first.
+/// An automaton of these modes, which starts in the first:
+///
+///     modes(mode<"going">(toward_goal{}, to<"passing">(below(clearance, 0.30F, 0.30F))),
+///           mode<"passing">(past_disc{}, to<"going">(above(clearance, 0.50F, 0.50F))))
 template <typename... Modes>
 [[nodiscard]] constexpr modes_field<Modes...> modes(Modes... all) noexcept {
   detail::check_modes<Modes...>();

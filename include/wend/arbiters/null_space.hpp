@@ -17,13 +17,13 @@ namespace wend::inline v0 {
 /// that drives at a speed of its own, whatever the confidence, has only v's direction anyway.
 template <typename First, typename Second>
 struct null_space_field {
-  [[no_unique_address]] First first;
-  [[no_unique_address]] Second second;
+  [[no_unique_address]] First first;  ///< heard whole
+  [[no_unique_address]] Second second;  ///< heard across the first, or whole where the first has no opinion
 
   /// What the two remember.
   template <Number S>
   struct Memory {
-    [[no_unique_address]] detail::PlacedMemory<First, S, null_space_field, 0> first;    ///< of the first
+    [[no_unique_address]] detail::PlacedMemory<First, S, null_space_field, 0> first;  ///< of the first
     [[no_unique_address]] detail::PlacedMemory<Second, S, null_space_field, 1> second;  ///< of the second
   };
 
@@ -49,6 +49,7 @@ template <typename Field>
   detail::check_field<Field, float>();
   return field;
 }
+/// From two fields on, nested to the right.
 template <typename First, typename... Rest>
 [[nodiscard]] constexpr auto null_space(First first, Rest... rest) noexcept {
   detail::check_field<First, float>();

@@ -9,15 +9,18 @@ namespace wend::inline v0 {
 /// memory. Longer lists nest to the right.
 template <typename First, typename Rest>
 struct priority_field {
-  [[no_unique_address]] First first;
-  [[no_unique_address]] Rest rest;
+  [[no_unique_address]] First first;  ///< heard where it has an opinion
+  [[no_unique_address]] Rest rest;  ///< heard elsewhere: a field, or the list from the second on
 
+  /// What the two remember.
   template <Number S>
   struct Memory {
-    [[no_unique_address]] detail::PlacedMemory<First, S, priority_field, 0> first;
+    [[no_unique_address]] detail::PlacedMemory<First, S, priority_field, 0> first;  ///< of the first
+    /// Of the rest; fresh while the first is heard.
     [[no_unique_address]] detail::PlacedMemory<Rest, S, priority_field, 1> rest;
   };
 
+  /// The first field's course where its confidence is over 0, else that of the rest.
   template <Number S, int N>
   [[nodiscard]] constexpr Course<S> operator()(Percept<S, N> const& percept, Memory<S>& memory) const noexcept {
     using RestMemory = decltype(memory.rest);
@@ -45,6 +48,7 @@ template <typename Field>
   detail::check_field<Field, float>();
   return field;
 }
+/// From two fields on, nested to the right.
 template <typename First, typename... Rest>
 [[nodiscard]] constexpr auto priority(First first, Rest... rest) noexcept {
   detail::check_field<First, float>();

@@ -9,28 +9,36 @@ namespace wend::inline v0 {
 
 namespace signals {
 
+/// The type of wend::clearance.
 struct clearance {
+  /// Metres, as in Percept::clearance.
   template <Number S, int N>
   [[nodiscard]] constexpr S operator()(Percept<S, N> const& percept) const noexcept {
     return percept.clearance;
   }
 };
 
+/// The type of wend::goal_distance.
 struct goal_distance {
+  /// Metres, as in Percept::goal_distance.
   template <Number S, int N>
   [[nodiscard]] constexpr S operator()(Percept<S, N> const& percept) const noexcept {
     return percept.goal_distance;
   }
 };
 
+/// The type of wend::heading_error.
 struct heading_error {
+  /// Chord of the angle from the nose to the goal's direction, in [0, 2].
   template <Number S, int N>
   [[nodiscard]] constexpr S operator()(Percept<S, N> const& percept) const noexcept {
     return length(Vec2<S>(percept.goal_direction - percept.pose.heading));
   }
 };
 
+/// The type of wend::disc_before_goal.
 struct disc_before_goal {
+  /// Cosine of the angle between the ways to the nearest disc and to the goal, in [-1, 1].
   template <Number S, int N>
   [[nodiscard]] constexpr S operator()(Percept<S, N> const& percept) const noexcept {
     return -dot(percept.away, percept.goal_direction);

@@ -17,7 +17,9 @@ inline void wend_sliding_needs_a_width_over_zero() noexcept {}
 /// of `width` metres round it, where the lower one drives up into the layer and the upper one down into it, the convex
 /// combination that leaves the clearance as it is (Filippov 1988, Differential Equations with Discontinuous Righthand
 /// Sides, chapter 2, section 4):
-///   f = alpha above + (1 - alpha) below,  alpha = below_N / (below_N - above_N)
+///
+///     f = alpha above + (1 - alpha) below,  alpha = below_N / (below_N - above_N)
+///
 /// with _N the part along the direction away from the nearest disc, in which clearance grows by a metre a metre. It is
 /// what infinitely fast switching comes to. In the layer alpha leans toward the middle of the layer, by as much of it
 /// as the machine is off, so that it does not drift out; where the two do not drive against each other, the side
@@ -27,8 +29,8 @@ template <typename Below, typename Above>
 struct sliding_field {
   Parameter threshold;  ///< metres of clearance
   Parameter width;      ///< metres, over 0
-  [[no_unique_address]] Below below;
-  [[no_unique_address]] Above above;
+  [[no_unique_address]] Below below;  ///< heard below the threshold
+  [[no_unique_address]] Above above;  ///< heard above it
 
   /// What the two remember.
   template <Number S>

@@ -50,7 +50,8 @@ template <int Count>
 [[nodiscard]] consteval std::array<Bearing, static_cast<std::size_t>(Count)> bearings_outwards() noexcept {
   std::array<Bearing, static_cast<std::size_t>(Count)> all{};
   for (int i = 0; i < Count; ++i) {
-    double const angle = 2.0 * std::numbers::pi / Count * ((i + 1) / 2);
+    int const steps = (i + 1) / 2;  // 0, 1, 1, 2, 2, ...
+    double const angle = 2.0 * std::numbers::pi / Count * steps;
     all[static_cast<std::size_t>(i)] = bearing(i % 2 == 1 ? angle : -angle);
   }
   return all;
@@ -76,7 +77,7 @@ struct NoVoters {
 template <int Candidates, typename Voters>
 struct vote_field {
   static_assert(Candidates >= 3, "wend: vote needs three candidate headings at least; write vote<36>(...)");
-  [[no_unique_address]] Voters voters;
+  [[no_unique_address]] Voters voters;  ///< the fields, each with its weight
 
   /// What the fields remember.
   template <Number S>

@@ -34,6 +34,7 @@ struct along_boundary {
   bool on_right = true;        ///< whether the boundary is kept on the right hand
   Parameter longest = 50.0F;   ///< metres; a boundary up to this long is found to be closed in one round
 
+  /// Since when and from where the boundary is followed, to tell that it is closed.
   template <Number S>
   struct Round {
     Vec2<S> place{S(0.0F), S(0.0F)};   ///< to come back to; metres
@@ -42,17 +43,19 @@ struct along_boundary {
     S until{S(0.0F)};                  ///< metres at which the place is set anew
     mask_t<S> departed{};              ///< whether the machine has been away from there
   };
+  /// What the field remembers between ticks.
   template <Number S>
   struct Memory {
-    mask_t<S> following{};
-    mask_t<S> given_up{};
+    mask_t<S> following{};  ///< whether it is at a boundary; no at first
+    mask_t<S> given_up{};  ///< whether the goal was found to be out of reach; no until then
     S hit_distance{S(0.0F)};  ///< of the goal, where the boundary was hit; metres
-    Vec2<S> goal{S(0.0F), S(0.0F)};
+    Vec2<S> goal{S(0.0F), S(0.0F)};  ///< metres; a goal that moves by over a tenth of `distance` starts it anew
     Vec2<S> position{S(0.0F), S(0.0F)};  ///< a tick ago
     Vec2<S> disc{S(0.0F), S(0.0F)};      ///< centre of the one that governs
-    Round<S> round{};
+    Round<S> round{};  ///< the way since the last place to come back to
   };
 
+  /// To the goal, or along the boundary that is followed.
   template <Number S, int N>
   [[nodiscard]] constexpr Course<S> operator()(Percept<S, N> const& percept, Memory<S>& memory) const noexcept {
     S const set = S(distance);

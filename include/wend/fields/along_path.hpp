@@ -81,12 +81,13 @@ template <Number S>
 /// discs are not looked at.
 template <int N>
 struct along_path {
-  Path<N> path;
+  Path<N> path;  ///< in the frame of the percept
   Parameter look_ahead = 0.5F;  ///< metres, over 0
 
   template <Number S>
   using Memory = PathProgress<S>;  ///< of the point that is pursued
 
+  /// Toward the point that is pursued, with confidence 1. Moves the point on.
   template <Number S, int Discs>
   [[nodiscard]] constexpr Course<S> operator()(Percept<S, Discs> const& percept, Memory<S>& memory) const noexcept {
     Vec2<S> const& position = percept.pose.position;
@@ -138,8 +139,10 @@ struct along_path {
   }
 };
 
+/// `along_path{path}` finds its number of pieces by itself.
 template <int N>
 along_path(Path<N>) -> along_path<N>;
+/// So does `along_path{path, look_ahead}`.
 template <int N>
 along_path(Path<N>, Parameter) -> along_path<N>;
 
@@ -161,13 +164,15 @@ along_path(Path<N>, Parameter) -> along_path<N>;
 /// frame of the percept, so that has to be one that stays put. The goal and discs are not looked at.
 template <int N>
 struct onto_path {
-  Path<N> path;
+  Path<N> path;  ///< in the frame of the percept
   Parameter gain = 3.0F;  ///< one over metres: slope of the course to the path, for each metre off
   Parameter steepest = 4.0F;  ///< slope of the course to the path far off
 
+  /// Which piece the machine is on.
   template <Number S>
   using Memory = PathProgress<S>;
 
+  /// Along the path and leaning back to it, with confidence 1. Moves the progress on.
   template <Number S, int Discs>
   [[nodiscard]] constexpr Course<S> operator()(Percept<S, Discs> const& percept, Memory<S>& memory) const noexcept {
     Vec2<S> const& position = percept.pose.position;
@@ -188,10 +193,13 @@ struct onto_path {
   }
 };
 
+/// `onto_path{path}` finds its number of pieces by itself.
 template <int N>
 onto_path(Path<N>) -> onto_path<N>;
+/// So does `onto_path{path, gain}`.
 template <int N>
 onto_path(Path<N>, Parameter) -> onto_path<N>;
+/// So does `onto_path{path, gain, steepest}`.
 template <int N>
 onto_path(Path<N>, Parameter, Parameter) -> onto_path<N>;
 

@@ -6,14 +6,17 @@
 namespace wend::inline v0 {
 
 /// The heading phi as the state of a dynamical system (Schoener and Dose 1992, Robotics and Autonomous Systems 10):
-///   d phi / dt = -attraction sin(phi - psi_goal) + sum over discs of push (phi - psi) window(phi - psi)
+///
+///     d phi / dt = -attraction sin(phi - psi_goal) + sum over discs of push (phi - psi) window(phi - psi)
+///
 /// with an attractor at the goal's bearing psi_goal and a repellor at each disc's bearing psi. Where several act, fixed
 /// points arise and vanish: two discs far apart leave an attractor between them, two that are near make one repellor.
 ///
 /// The source's exponentials are replaced, so that the same bits come out everywhere and nothing needs a C library:
-///   exp(-x) by (1 + x/4)^-4, which has its value and slope at 0 and is nowhere smaller, so nothing repels less;
-///   phi - psi by its sine, its square by 2 (1 - cosine), so that no angle is needed;
-///   the width by the sine of half the angle that a disc and the machine's radius cover.
+/// - exp(-x) by (1 + x/4)^-4, which has its value and slope at 0 and is nowhere smaller, so nothing repels less;
+/// - phi - psi by its sine, its square by 2 (1 - cosine), so that no angle is needed;
+/// - the width by the sine of half the angle that a disc and the machine's radius cover.
+///
 /// With them push = repulsion (1 + clearance / (4 fade))^-4 and window = (1 + (1 - cosine) / (4 width^2))^-4.
 ///
 /// The course is the present heading turned by the angle whose sine is `lead` times the rate. Steered with a gain of
@@ -46,6 +49,8 @@ struct attractor_dynamics {
     return total;
   }
 
+  /// The heading that `rate` leads to in `lead` seconds, off the nose by the angle whose sine is rate times lead, up to
+  /// 74 degrees. With confidence 1.
   template <Number S, int N>
   [[nodiscard]] constexpr Course<S> operator()(Percept<S, N> const& percept) const noexcept {
     constexpr Parameter sharpest = 0.96F;  // the sine of 74 degrees, and its cosine is 0.28

@@ -46,6 +46,7 @@ struct between_walls {
   std::array<Bearing, static_cast<std::size_t>(Beams)> beams =
       detail::fan<Beams>(40.0 * std::numbers::pi / 180.0, 80.0 * std::numbers::pi / 180.0);
 
+  /// Along the nose, leaning toward the middle.
   template <Number S, int N>
   [[nodiscard]] constexpr Course<S> operator()(Percept<S, N> const& percept) const noexcept {
     Vec2<S> const nose = polar(percept.pose.heading).direction;

@@ -31,8 +31,8 @@ struct navigation_function {
   /// What phi is made of: square metres, and metres to the power of twice the number of discs and two.
   template <Number S>
   struct Parts {
-    S gamma;
-    S beta;
+    S gamma;  ///< squared distance to the goal
+    S beta;  ///< product of the discs' factors and the outer disc's; over 0 in free space
   };
 
   /// gamma, and the product beta: negative or 0 where one of its factors is.

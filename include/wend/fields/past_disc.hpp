@@ -15,12 +15,14 @@ namespace wend::inline v0 {
 ///
 /// No opinion where there is no disc, or at the very centre of one.
 struct past_disc {
+  /// The side that was chosen, and what tells that another disc has become the nearest.
   template <Number S>
   struct Memory {
     Vec2<S> away{S(0.0F), S(0.0F)};  ///< of the tick before; (0, 0) before the first
-    mask_t<S> disc_on_right{};
+    mask_t<S> disc_on_right{};  ///< the hand it is kept on; means nothing before the first
   };
 
+  /// Across the direction to the nearest disc, with confidence 1.
   template <Number S, int N>
   [[nodiscard]] constexpr Course<S> operator()(Percept<S, N> const& percept, Memory<S>& memory) const noexcept {
     Vec2<S> const& away = percept.away;

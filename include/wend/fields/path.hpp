@@ -11,14 +11,14 @@ namespace wend::inline v0 {
 
 /// A point of a path that is a constant; metres.
 struct PathPoint {
-  Parameter x = 0.0F;
-  Parameter y = 0.0F;
+  Parameter x = 0.0F;  ///< forward, or along the x axis of the frame in use
+  Parameter y = 0.0F;  ///< to the left, or along its y axis
 };
 
 /// A straight piece, or an arc of half a turn at most. Made by `straight` and `arc`.
 struct PathPiece {
-  PathPoint start{};
-  PathPoint end{};
+  PathPoint start{};  ///< metres
+  PathPoint end{};  ///< metres
   PathPoint centre{};  ///< of an arc
   Parameter curvature = 0.0F;  ///< one over metres; positive where it bends to the left, 0 where it is straight
 };
@@ -77,6 +77,7 @@ inline void wend_each_piece_of_a_path_has_to_start_where_the_last_one_ends() noe
 template <int N>
 struct Path {
   static_assert(N >= 1, "wend: a path needs one piece at least; write path_of(straight({0.0F, 0.0F}, {1.0F, 0.0F}))");
+  /// In the order they are driven.
   std::array<PathPiece, static_cast<std::size_t>(N)> pieces{};
 };
 
@@ -158,7 +159,7 @@ template <Number S>
 /// How far along a path something is: in pieces, the last of them by its share of the chord.
 template <Number S>
 struct PathProgress {
-  S pieces{S(0.0F)};
+  S pieces{S(0.0F)};  ///< in [0, N]: 2.25 is a quarter of the chord into the third piece
 };
 
 /// Moves the progress on to the point nearest to a machine. It never goes back, and never looks beyond the next piece:

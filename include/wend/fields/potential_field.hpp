@@ -27,8 +27,8 @@ struct potential_field {
   /// The sum of the forces, and the sum of their sizes.
   template <Number S>
   struct Force {
-    Vec2<S> sum;
-    S sum_of_sizes;
+    Vec2<S> sum;  ///< newton, if you think of it as a force
+    S sum_of_sizes;  ///< newton; no less than the size of the sum
   };
 
   /// -grad U (Khatib's eq. 10 and 17; Ge and Cui's eq. 9 to 11). Towards the goal -attraction * (x - goal); away from a

@@ -68,12 +68,14 @@ struct roam {
   Parameter seed = 1.0F;  ///< a whole number from 1 to 30268
   bool about_nose = false;  ///< else about the goal's direction
 
+  /// The angle of the moment, and where the draws have got to.
   template <Number S>
   struct Memory {
     S offset{S(0.0F)};  ///< X
-    WichmannHill<S> draw{};
+    WichmannHill<S> draw{};  ///< the source of the noise; started from the seed on the first tick
   };
 
+  /// The goal's direction or the nose's, turned by the angle, with confidence 1. Draws once.
   template <Number S, int N>
   [[nodiscard]] constexpr Course<S> operator()(Percept<S, N> const& percept, Memory<S>& memory) const noexcept {
     memory.draw.start(S(seed));

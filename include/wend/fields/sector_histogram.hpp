@@ -59,6 +59,7 @@ struct sector_histogram {
   int wide = Sectors / 4;       ///< sectors; a valley that has more is wide (90 degrees in the source)
   int smoothing = 1;  ///< sectors to either side that are smoothed over, 0 to Sectors / 2 (5 in the source)
 
+  /// One number a sector, counter-clockwise from straight ahead.
   template <Number S>
   using Row = std::array<S, static_cast<std::size_t>(Sectors)>;
 
@@ -79,6 +80,7 @@ struct sector_histogram {
     return smooth;
   }
 
+  /// The goal's direction, or the middle of a sector of a valley.
   template <Number S, int N>
   [[nodiscard]] constexpr Course<S> operator()(Percept<S, N> const& percept) const noexcept {
     Row<S> const density = densities(percept);
@@ -95,7 +97,8 @@ struct sector_histogram {
       to_right[up] = right;
       to_left[down] = left;
     }
-    S const half = S(static_cast<Parameter>(wide / 2));
+    int const half_wide = wide / 2;  // rounded down
+    S const half = S(static_cast<Parameter>(half_wide));
     Vec2<S> const nose = polar(percept.pose.heading).direction;
     Vec2<S> best = zero2<S>();
     S nearness = S(-2.0F);

@@ -38,11 +38,13 @@ struct shared_avoidance {
   Parameter recovery = 0.5F;  ///< seconds in which to get out of an overlap
   Parameter lean = 0.3F;  ///< tangent of the angle; 0 for the published form
 
+  /// What was given last.
   template <Number S>
   struct Memory {
     Vec2<S> velocity{S(0.0F), S(0.0F)};  ///< metres a second over the ground
   };
 
+  /// The velocity nearest to the wish that shares the avoidance, as direction and speed share.
   template <Number S, int N>
   [[nodiscard]] constexpr Course<S> operator()(Percept<S, N> const& percept, Memory<S>& memory) const noexcept {
     S const most = S(speed);

@@ -30,6 +30,7 @@ struct through_gap {
   Parameter width = 0.3F;  ///< weight of a gap's width
   Bearing inset = bearing(0.2);  ///< unit vector at the angle from a wide gap's end, under pi/4
 
+  /// Straight to the goal, or through the gap with the largest score.
   template <Number S, int N>
   [[nodiscard]] constexpr Course<S> operator()(Percept<S, N> const& percept) const noexcept {
     std::array<Bar<S>, static_cast<std::size_t>(N)> bars;

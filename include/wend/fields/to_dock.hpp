@@ -36,6 +36,7 @@ struct to_dock {
   Parameter slow_within = 0.5F;  ///< metres from the dock within which the speed share falls in proportion
   Parameter close = 0.02F;  ///< metres at which it has arrived, but for the heading
 
+  /// Toward the dock on an arc that ends along `heading`, with confidence 1.
   template <Number S, int N>
   [[nodiscard]] constexpr Course<S> operator()(Percept<S, N> const& percept) const noexcept {
     Vec2<S> const& sight = percept.goal_direction;

@@ -13,10 +13,10 @@ namespace wend::inline v0 {
 /// `left` and `right` are its edges, the tangents to the disc grown by the machine, as unit vectors.
 template <Number S>
 struct VelocityCone {
-  Vec2<S> left;
-  Vec2<S> right;
-  S sine;
-  S cosine;
+  Vec2<S> left;  ///< unit vector along the left edge
+  Vec2<S> right;  ///< unit vector along the right edge
+  S sine;  ///< of the half-angle, in [0, 1]
+  S cosine;  ///< of the half-angle, in [0, 1]
 };
 
 /// The cone of a disc whose centre lies at `offset` from the machine's, grown to `radius` (both radii and a margin;

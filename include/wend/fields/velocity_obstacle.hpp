@@ -32,6 +32,7 @@ struct velocity_obstacle {
   Parameter margin = 0.12F;  ///< metres to stay clear of a disc; more than the margin of the pace, which stops at that
   Parameter reserve = 0.5F;  ///< seconds: a disc that moves is taken larger by its own way in this time
 
+  /// The safe direction of those tried that is nearest to the goal's, or the one that is safe the longest.
   template <Number S, int N>
   [[nodiscard]] constexpr Course<S> operator()(Percept<S, N> const& percept) const noexcept {
     S const set = S(speed);

@@ -19,9 +19,10 @@ namespace wend::inline v0::lab {
 /// An explanation: lines that are indented as deep as what they tell is nested, and the fields whose courses went into
 /// the outcome, in the order of the composition.
 struct Account {
-  std::vector<std::string> lines;
-  std::vector<std::string> voices;
+  std::vector<std::string> lines;  ///< each indented by two blanks a level, without its end
+  std::vector<std::string> voices;  ///< names of the fields that were heard
 
+  /// Adds a line, `depth` levels deep.
   void line(int depth, std::string const& text) {
     lines.push_back(std::string(2 * static_cast<std::size_t>(depth), ' ') + text);
   }

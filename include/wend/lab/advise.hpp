@@ -47,7 +47,7 @@ struct IndependentReadings {
 
 /// Gaussian noise of a limited band, sampled so fast that it counts as continuous: as behind a low-pass filter.
 struct BandLimitedNoise {
-  double sigma = 0.02;    ///< standard deviation, in the signal's unit: sqrt(R(0)), R being the autocorrelation
+  double sigma = 0.02;  ///< standard deviation, in the signal's unit: sqrt(R(0)), R being the autocorrelation
   double quickness = 1.0;  ///< sqrt(-R''(0) / R(0)), radians a second: the root mean square of its angular frequency
 
   /// Noise of even power from 0 to `band` hertz: quickness = 2 pi band / sqrt(3).
@@ -74,13 +74,13 @@ struct BandLimitedNoise {
 
 /// Thresholds for below(clearance, enter, leave), metres, and what was reckoned.
 struct Advice {
-  double enter = 0.0;
-  double leave = 0.0;
-  double stopping = 0.0;       ///< metres: what a machine at top speed needs to stop, the margin included
-  double allowance = 0.0;      ///< metres: added to it because a reading may be too long
-  double width = 0.0;          ///< metres: leave - enter
+  double enter = 0.0;  ///< yes from under this clearance on
+  double leave = 0.0;  ///< no from over this clearance on
+  double stopping = 0.0;  ///< metres: what a machine at top speed needs to stop, the margin included
+  double allowance = 0.0;  ///< metres: added to it because a reading may be too long
+  double width = 0.0;  ///< metres: leave - enter
   double between_switches = 0.0;  ///< seconds: mean time between two false switches, at least
-  std::string text;            ///< the same in words
+  std::string text;  ///< the same in words
 };
 
 /// Clearance, in metres, from which a machine at top speed can stop as Pace has it: margin, overrun, v * reaction and

@@ -16,24 +16,26 @@ namespace wend::inline v0::lab {
 
 /// A box of states: metres, and radians counter-clockwise. A point machine has every heading, and ignores its own.
 struct States {
-  Interval x;
-  Interval y;
-  Interval heading;
+  Interval x;  ///< metres
+  Interval y;  ///< metres
+  Interval heading;  ///< radians
 };
 
 /// Cells by number along each axis, those of the first column, row and layer of headings having number 0.
 struct CellIndex {
-  int x = 0;
-  int y = 0;
-  int heading = 0;
+  int x = 0;  ///< column, from the left
+  int y = 0;  ///< row, from below
+  int heading = 0;  ///< layer, counter-clockwise from -pi
+  /// Whether it is the same cell.
   friend bool operator==(CellIndex const&, CellIndex const&) = default;
 };
 
 /// From `first` to `last`, both included; headings go on beyond the last layer with the first.
 struct CellRange {
-  CellIndex first;
-  CellIndex last;
+  CellIndex first;  ///< the least numbers
+  CellIndex last;  ///< the greatest numbers; its heading may lie beyond the last layer
 
+  /// Whether a cell is one of them, on a grid of so many `headings`.
   [[nodiscard]] bool contains(CellIndex const& c, int headings) const {
     int const turned = c.heading < first.heading ? c.heading + headings : c.heading;
     return first.x <= c.x && c.x <= last.x && first.y <= c.y && c.y <= last.y && first.heading <= turned &&
@@ -44,14 +46,21 @@ struct CellRange {
 /// Equal cells over a rectangle, and over all headings from -pi. Cells are closed: a point on an edge is in both.
 class CellGrid {
  public:
+  /// No cell at all.
   CellGrid() = default;
+  /// `count` cells along each axis over the rectangle from `low` to `high`, in metres.
   CellGrid(Vec2<double> const& low, Vec2<double> const& high, CellIndex const& count)
       : low_(low), high_(high), count_(count) {}
 
+  /// How many cells there are along each axis.
   [[nodiscard]] CellIndex const& count() const { return count_; }
+  /// The corner with the least coordinates; metres.
   [[nodiscard]] Vec2<double> const& low() const { return low_; }
+  /// The corner with the greatest coordinates; metres.
   [[nodiscard]] Vec2<double> const& high() const { return high_; }
+  /// How many cells there are in all.
   [[nodiscard]] std::size_t size() const { return at({0, 0, count_.heading}); }
+  /// A cell's place in a row of all cells: by heading, then y, then x.
   [[nodiscard]] std::size_t at(CellIndex const& c) const {
     return (static_cast<std::size_t>(c.heading) * static_cast<std::size_t>(count_.y) + static_cast<std::size_t>(c.y)) *
                static_cast<std::size_t>(count_.x) +

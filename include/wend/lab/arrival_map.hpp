@@ -19,11 +19,12 @@ namespace wend::inline v0::lab {
 
 /// What is known about the states of a cell.
 enum class Arrival : std::uint8_t {
-  undecided,
+  undecided,  ///< neither could be shown
   proved,   ///< every path from every one of them is clear of all discs and ends at the goal
   blocked,  ///< in some of them the machine touches a disc, or may
 };
 
+/// How finely the map is made, and of which machine.
 struct ArrivalOptions {
   double finest = 0.005;   ///< metres: cells are no larger
   int doublings = 3;       ///< cells are first tried in blocks of 2^doublings a side
@@ -42,10 +43,11 @@ struct ArrivalOptions {
 
 /// The cells of a region, and what is known about each.
 struct ArrivalMap {
-  CellGrid grid;
+  CellGrid grid;  ///< where the cells lie
   std::vector<Arrival> cells;  ///< of grid.at(index)
   std::int64_t evaluations = 0;  ///< boxes of which the step was worked out
 
+  /// What is known about one cell.
   [[nodiscard]] Arrival at(CellIndex const& c) const { return cells[grid.at(c)]; }
 
   /// A share of the states that are not blocked, in [0, 1]; 0 when there are none.

@@ -109,6 +109,7 @@ class PointSteps : public detail::StillSurroundings<Capacity> {
   using Base = detail::StillSurroundings<Capacity>;
 
  public:
+  /// Whether a state has a heading: a point machine's has none.
   static constexpr bool has_heading = false;
 
   /// `length` in metres; `dt` in seconds is what the policy is told that a step takes. Policy and world are referred
@@ -154,6 +155,7 @@ class LoopSteps : public detail::StillSurroundings<Capacity> {
   using Base = detail::StillSurroundings<Capacity>;
 
  public:
+  /// Whether a state has a heading: it has, since the machine turns as it drives.
   static constexpr bool has_heading = true;
 
   /// `period` in seconds. The world is referred to.

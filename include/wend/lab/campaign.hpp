@@ -27,7 +27,7 @@ namespace wend::inline v0::lab {
 /// How a campaign is driven. None of it changes a row but `finest`.
 struct CampaignOptions {
   std::uint64_t first = 0;  ///< number of the first run
-  int threads = 1;
+  int threads = 1;  ///< 1 or more, that drive runs side by side
   double finest = 0.01;     ///< seconds: the longest step of a plant on lanes
   std::atomic<bool> const* stop = nullptr;  ///< once true, it ends soon, and gives the rows so far
   /// Called after each run, from one thread at a time: runs done, and runs in all.
@@ -36,7 +36,7 @@ struct CampaignOptions {
 
 /// What a campaign gives: one row a run, by run number.
 struct Campaign {
-  std::vector<RunRow> rows;
+  std::vector<RunRow> rows;  ///< in rising order of RunRow::run
   bool complete = true;  ///< false when it was stopped: then some runs are missing
 };
 
@@ -105,7 +105,7 @@ template <typename Loop>
 RunRow simulate_row(Loop const& loop, Vehicle const& vehicle, SceneOf const& scene, std::uint64_t seed,
                     std::uint64_t run, Run* kept = nullptr) {
   Run driven = simulate(loop, vehicle, scene.ground->world(), scene.trip, seed, run, kept != nullptr);
-  RunRow const row = row_of(driven, scene.trip, run, scene.number);
+  RunRow row = row_of(driven, scene.trip, run, scene.number);
   if (kept != nullptr) {
     *kept = std::move(driven);
   }
@@ -178,8 +178,8 @@ template <int Lanes = native_lanes, int Told = discs_told, typename Loop>
 
 /// One run, with its ticks.
 struct Replay {
-  RunRow row;
-  Run run;
+  RunRow row;  ///< as the campaign had it
+  Run run;  ///< the same run, with its ticks
   Scene scene;  ///< it was driven in
 };
 

@@ -20,16 +20,18 @@ namespace wend::inline v0::lab {
 /// the column in characters.
 class FileError : public std::runtime_error {
  public:
+  /// "file:line:column: what".
   FileError(std::string const& file, std::size_t line, std::size_t column, std::string const& what)
       : std::runtime_error(file + ":" + std::to_string(line) + ":" + std::to_string(column) + ": " + what) {}
+  /// "file: what", where no place in it is to blame.
   FileError(std::string const& file, std::string const& what) : std::runtime_error(file + ": " + what) {}
 };
 
 /// A table of numbers under a line of names, no two alike. An empty cell is not-a-number.
 struct Table {
-  std::string file;
-  std::vector<std::string> names;
-  std::vector<std::vector<double>> rows;
+  std::string file;  ///< its name, for messages
+  std::vector<std::string> names;  ///< of the columns
+  std::vector<std::vector<double>> rows;  ///< one a line, as wide as `names`
   std::vector<std::size_t> lines;  ///< of the file, one a row, from 1
   std::vector<std::vector<std::size_t>> columns{};  ///< where each cell of each row begins in its line, from 1
   std::size_t names_line = 1;                       ///< the line of the names

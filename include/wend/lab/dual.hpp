@@ -20,6 +20,7 @@ class Dual {
   using Slopes = Eigen::Array<double, N, 1, Eigen::DontAlign>;
 
  public:
+  /// The constant 0.
   Dual() noexcept : slopes_(Slopes::Zero()) {}
   /// A constant. A parameter of a policy counts as one, unless it is one of the knobs below.
   explicit Dual(Parameter const& x) noexcept : Dual(static_cast<double>(x)) {
@@ -30,8 +31,10 @@ class Dual {
       }
     }
   }
+  /// A constant.
   explicit Dual(double x) noexcept : value_(x), slopes_(Slopes::Zero()) {}
-  explicit Dual(int x) noexcept : Dual(static_cast<double>(x)) {}  // Eigen writes Scalar(0)
+  /// A constant: Eigen writes Scalar(0).
+  explicit Dual(int x) noexcept : Dual(static_cast<double>(x)) {}
   /// Independent variable number k, from 0.
   [[nodiscard]] static Dual variable(double x, int k) noexcept {
     Dual v(x);
@@ -39,13 +42,19 @@ class Dual {
     return v;
   }
 
+  /// The number itself.
   [[nodiscard]] double value() const noexcept { return value_; }
+  /// Its derivative with respect to variable k, in [0, N).
   [[nodiscard]] double slope(int k) const noexcept { return slopes_[k]; }
 
   /// Parameters that count as independent variables for this thread, by their place in memory; null for none.
   /// Set by lab::TurnedKnobs (lab/sensitivity.hpp).
   inline static constinit thread_local std::array<Parameter const*, static_cast<std::size_t>(N)> knobs{};
 
+  /// @name Arithmetic
+  /// @{
+
+  /// The value, and its slopes by the chain rule.
   [[nodiscard]] friend Dual operator+(Dual const& a, Dual const& b) noexcept {
     return {a.value_ + b.value_, a.slopes_ + b.slopes_};
   }
@@ -63,22 +72,33 @@ class Dual {
   }
   Dual& operator+=(Dual const& b) noexcept { return *this = *this + b; }
   Dual& operator*=(Dual const& b) noexcept { return *this = *this * b; }
+  /// @}
 
   /// The root's slope at 0, where it has none, is 0.
   [[nodiscard]] friend Dual sqrt(Dual const& a) noexcept {
     double const r = std::sqrt(a.value_);
     return {r, a.slopes_ * (r > 0.0 ? 0.5 / r : 0.0)};
   }
+  /// Of an angle in radians.
   [[nodiscard]] friend Dual sin(Dual const& a) noexcept { return {std::sin(a.value_), a.slopes_ * std::cos(a.value_)}; }
+  /// Of an angle in radians.
   [[nodiscard]] friend Dual cos(Dual const& a) noexcept {
     return {std::cos(a.value_), a.slopes_ * -std::sin(a.value_)};
   }
 
+  /// @name Comparison
+  /// @{
+
+  /// Of the values alone.
   [[nodiscard]] friend bool operator<(Dual const& a, Dual const& b) noexcept { return a.value_ < b.value_; }
   [[nodiscard]] friend bool operator>(Dual const& a, Dual const& b) noexcept { return a.value_ > b.value_; }
   [[nodiscard]] friend bool operator<=(Dual const& a, Dual const& b) noexcept { return a.value_ <= b.value_; }
   [[nodiscard]] friend bool operator>=(Dual const& a, Dual const& b) noexcept { return a.value_ >= b.value_; }
+  /// @}
+
+  /// a or b with its slopes.
   [[nodiscard]] friend Dual select(bool m, Dual const& a, Dual const& b) noexcept { return m ? a : b; }
+  /// Whether the value is; the slopes are not looked at.
   [[nodiscard]] friend bool finite(Dual const& a) noexcept { return wend::finite(a.value_); }
 
  private:

@@ -25,27 +25,28 @@ struct DumpHeader {
   std::uint8_t number_bytes = 0;    ///< 4 for float, 8 for double
   std::uint8_t seen_kind = 0;       ///< 1 discs, 2 discs that move, 3 readings
   std::uint16_t seen_size = 0;      ///< capacity of the set, or beams
-  std::uint16_t discs_kept = 0;
-  std::uint16_t memory_bytes = 0;
-  std::uint16_t command_bytes = 0;
+  std::uint16_t discs_kept = 0;  ///< how many discs a loop with a sensing keeps of the readings
+  std::uint16_t memory_bytes = 0;  ///< of the loop's memory in a record
+  std::uint16_t command_bytes = 0;  ///< of the command in a record
 };
 
 /// One decision as it was logged. `number` counts the ticks of the log.
 template <typename Loop, typename Seen>
 struct Decision {
+  /// The number that the loop computed in.
   using S = typename v0::detail::SeenOf<Seen>::Scalar;
-  std::uint32_t number = 0;
-  Situation<S> now;
-  Seen seen;
-  memory_t<Loop, S> before;
-  typename DecisionLog<Loop, Seen, 1>::Command command;
+  std::uint32_t number = 0;  ///< modulo 2^32
+  Situation<S> now;  ///< pose, goal and times that went in
+  Seen seen;  ///< discs or readings that went in
+  memory_t<Loop, S> before;  ///< what the loop remembered when the tick began
+  typename DecisionLog<Loop, Seen, 1>::Command command;  ///< what came out
 };
 
 /// The good records of a dump, up to the first that is not.
 template <typename Loop, typename Seen>
 struct Dump {
-  DumpHeader header;
-  std::vector<Decision<Loop, Seen>> decisions;
+  DumpHeader header;  ///< as it was read
+  std::vector<Decision<Loop, Seen>> decisions;  ///< in the order of their numbers
   std::vector<std::uint32_t> overwritten;  ///< numbers of records that the machine overwrote while it dumped
   std::string damage;                      ///< which record is not good, and why; empty when all are
 };

@@ -40,7 +40,7 @@ enum class EquilibriumKind : std::uint8_t {
 /// speed taken as confidence times v, multiply by v for 1/second.
 struct Equilibrium {
   Vec2<double> position{0.0, 0.0};  ///< metres
-  EquilibriumKind kind = EquilibriumKind::degenerate;
+  EquilibriumKind kind = EquilibriumKind::degenerate;  ///< what a machine does near it
   int index = 0;  ///< of Poincare: how often the course turns on a small way round
   std::array<std::complex<double>, 2> eigenvalues{};  ///< smaller real part first; both 0 for the goal
 };
@@ -56,14 +56,15 @@ enum class Doubt : std::uint8_t {
 /// A cluster of boxes in which the course may vanish. Outside of all of them and off the points found it does not.
 struct Unresolved {
   Region box;  ///< the smallest around all boxes of the cluster
-  std::int64_t boxes = 0;
-  Doubt doubt = Doubt::degenerate;
+  std::int64_t boxes = 0;  ///< in the cluster
+  Doubt doubt = Doubt::degenerate;  ///< why it could not be settled
   std::optional<int> index;  ///< sum of the indices of all that is in it, where it could be counted
 };
 
+/// What `equilibria` found, and whether that is all there is.
 struct Equilibria {
   std::vector<Equilibrium> points;     ///< by x, then y
-  std::vector<Unresolved> unresolved;
+  std::vector<Unresolved> unresolved;  ///< where there may be more; empty when nothing is in doubt
   std::optional<int> boundary_index;   ///< sum of all indices by the boundary; none if the course vanishes on it
   int found_index = 0;                 ///< the sum over `points` and the unresolved whose index is known
   bool index_agrees = false;           ///< both sums are known and equal
@@ -73,14 +74,15 @@ struct Equilibria {
   [[nodiscard]] bool complete() const noexcept { return index_agrees && unresolved.empty(); }
 };
 
+/// Of which machine, and how hard to try.
 struct EquilibriaOptions {
   Parameter robot_radius = 0.20F;       ///< metres
   double keep_off = 0.0;                ///< metres: places with less clearance are not looked at
   double finest = 0.001;                ///< metres: boxes no larger are not split
   double goal_radius = 0.01;            ///< metres: see `equilibria`
   Vec2<double> heading{1.0, 0.0};       ///< of the nose, for policies that ask
-  std::int64_t box_budget = 400'000;
-  int threads = 1;
+  std::int64_t box_budget = 400'000;  ///< boxes to look at, at the most
+  int threads = 1;  ///< 1 or more, that look at boxes side by side
 };
 
 namespace detail {
@@ -224,6 +226,7 @@ template <int Capacity = 32, typename Policy>
   double const apart = 6.0 * options.finest;
   std::vector<std::vector<PlaneBox>> const gathered = detail::clusters(std::move(searched.left), apart);
   std::vector<Region> hulls;
+  hulls.reserve(gathered.size());
   for (std::vector<PlaneBox> const& cluster : gathered) {
     hulls.push_back(detail::hull_of(cluster));
   }

@@ -19,20 +19,22 @@ namespace wend::inline v0::lab {
 
 /// How often, and on which noise.
 struct Trials {
-  std::uint64_t seed = 1;
+  std::uint64_t seed = 1;  ///< of all noise: the same seed gives the same runs
   int runs = 20;  ///< each with noise of its own
   bool shrink = true;  ///< whether a scene that fails is made smaller, which takes many runs more
 };
 
 /// What came of it: `CHECK(expect_arrives(...))` in any framework, `.why` to be printed with it.
 struct Expectation {
-  bool held = true;
+  bool held = true;  ///< whether every run did what was expected
   std::string why;  ///< one sentence; of one that failed, also the seed and the scene, as code to be pasted
-  std::uint64_t seed = 0;
+  std::uint64_t seed = 0;  ///< of the trials
   std::uint64_t run_number = 0;  ///< of the run that failed
   Scene scene;  ///< in which it fails, made small; as given where it held
 
+  /// Whether it held.
   explicit operator bool() const noexcept { return held; }
+  /// `why`, for a framework that asks for a text.
   friend std::string const& to_string(Expectation const& e) { return e.why; }
 };
 

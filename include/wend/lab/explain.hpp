@@ -20,10 +20,11 @@ namespace wend::inline v0::lab {
 
 /// Where an explanation has got to: how deep, as what part of what is above, and whether what is told has a say.
 struct Place {
-  int depth = 0;
-  std::string part;
-  bool heard = true;
+  int depth = 0;  ///< levels, 0 for the whole policy
+  std::string part;  ///< "first: ", say; empty for the whole policy
+  bool heard = true;  ///< whether what is told there can get into the outcome
 
+  /// One level deeper, as the part `name`; a part of what has no say has none either.
   [[nodiscard]] Place below(std::string const& name, bool has_a_say = true) const {
     return {depth + 1, name + ": ", heard && has_a_say};
   }
@@ -93,6 +94,7 @@ void explain_thresholds(Guard const& guard, char const* enters, char const* leav
 /// which nothing more is known than what they answer and remember.
 template <typename F>
 struct Explain {
+  /// One line; a field that answers with confidence where it has a say is one of the voices.
   template <typename Percept, typename Memory>
   static void tell(F const& f, Percept const& percept, Memory const& before, Account& account, Place const& place) {
     Memory after = before;
@@ -122,8 +124,10 @@ void explain(F const& f, Percept const& percept, Memory const& before, Account& 
   }
 }
 
+/// A guard by thresholds.
 template <typename Signal>
 struct Explain<below_guard<Signal>> {
+  /// The answer, the signal, and the threshold that decided.
   template <typename Percept, typename Memory>
   static void tell(below_guard<Signal> const& guard, Percept const& percept, Memory const& before, Account& account,
                    Place const& place) {
@@ -131,8 +135,10 @@ struct Explain<below_guard<Signal>> {
   }
 };
 
+/// A guard by thresholds.
 template <typename Signal>
 struct Explain<above_guard<Signal>> {
+  /// The answer, the signal, and the threshold that decided.
   template <typename Percept, typename Memory>
   static void tell(above_guard<Signal> const& guard, Percept const& percept, Memory const& before, Account& account,
                    Place const& place) {
@@ -140,8 +146,10 @@ struct Explain<above_guard<Signal>> {
   }
 };
 
+/// A guard whose answers are held.
 template <typename Guard>
 struct Explain<held_guard<Guard>> {
+  /// The answer, why it changes or stands, and the guard inside.
   template <typename Percept, typename Memory>
   static void tell(held_guard<Guard> const& held, Percept const& percept, Memory const& before, Account& account,
                    Place const& place) {
@@ -164,8 +172,10 @@ struct Explain<held_guard<Guard>> {
   }
 };
 
+/// Two guards joined.
 template <typename Join, typename A, typename B>
 struct Explain<joined_guard<Join, A, B>> {
+  /// The answer, and both guards.
   template <typename Percept, typename Memory>
   static void tell(joined_guard<Join, A, B> const& guard, Percept const& percept, Memory const& before,
                    Account& account, Place const& place) {
@@ -178,8 +188,10 @@ struct Explain<joined_guard<Join, A, B>> {
   }
 };
 
+/// A guard turned around.
 template <typename Guard>
 struct Explain<negated_guard<Guard>> {
+  /// The answer, and the guard inside.
   template <typename Percept, typename Memory>
   static void tell(negated_guard<Guard> const& guard, Percept const& percept, Memory const& before, Account& account,
                    Place const& place) {
@@ -189,8 +201,10 @@ struct Explain<negated_guard<Guard>> {
   }
 };
 
+/// A field inside a guard, another outside.
 template <typename Guard, typename Inside, typename Outside>
 struct Explain<guarded_field<Guard, Inside, Outside>> {
+  /// Which of the two is heard, the guard, and that field.
   template <typename Percept, typename Memory>
   static void tell(guarded_field<Guard, Inside, Outside> const& field, Percept const& percept, Memory const& before,
                    Account& account, Place const& place) {
@@ -214,8 +228,10 @@ struct Explain<guarded_field<Guard, Inside, Outside>> {
   }
 };
 
+/// The first field that has an opinion.
 template <typename First, typename Rest>
 struct Explain<priority_field<First, Rest>> {
+  /// Which one is heard, and those asked.
   template <typename Percept, typename Memory>
   static void tell(priority_field<First, Rest> const& field, Percept const& percept, Memory const& before,
                    Account& account, Place const& place) {
@@ -234,8 +250,10 @@ struct Explain<priority_field<First, Rest>> {
   }
 };
 
+/// A blend of two fields.
 template <typename Weight, typename Low, typename High>
 struct Explain<blended_field<Weight, Low, High>> {
+  /// The weight, the course, and both fields.
   template <typename Percept, typename Memory>
   static void tell(blended_field<Weight, Low, High> const& field, Percept const& percept, Memory const& before,
                    Account& account, Place const& place) {

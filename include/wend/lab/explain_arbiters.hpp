@@ -16,8 +16,10 @@
 
 namespace wend::inline v0::lab {
 
+/// A filter that keeps clear of discs.
 template <typename Field>
 struct Explain<kept_clear_field<Field>> {
+  /// What the field wants, what the filter makes of it, and the field.
   template <typename Percept, typename Memory>
   static void tell(kept_clear_field<Field> const& filter, Percept const& percept, Memory const& before,
                    Account& account, Place const& place) {
@@ -33,8 +35,10 @@ struct Explain<kept_clear_field<Field>> {
   }
 };
 
+/// A switch on clearance that slides.
 template <typename Below, typename Above>
 struct Explain<sliding_field<Below, Above>> {
+  /// Where the clearance is beside the layer, the course, and both fields.
   template <typename Percept, typename Memory>
   static void tell(sliding_field<Below, Above> const& field, Percept const& percept, Memory const& before,
                    Account& account, Place const& place) {
@@ -55,8 +59,10 @@ struct Explain<sliding_field<Below, Above>> {
   }
 };
 
+/// Priority by projection.
 template <typename First, typename Second>
 struct Explain<null_space_field<First, Second>> {
+  /// The course, the first field, and the second.
   template <typename Percept, typename Memory>
   static void tell(null_space_field<First, Second> const& field, Percept const& percept, Memory const& before,
                    Account& account, Place const& place) {
@@ -88,8 +94,10 @@ void explain_voters(Voters const& voters, Percept const& percept, Memory const& 
 
 }  // namespace detail
 
+/// Arbitration by votes.
 template <int Candidates, typename Voters>
 struct Explain<vote_field<Candidates, Voters>> {
+  /// The winner, and each field with its weight.
   template <typename Percept, typename Memory>
   static void tell(vote_field<Candidates, Voters> const& field, Percept const& percept, Memory const& before,
                    Account& account, Place const& place) {
@@ -101,8 +109,10 @@ struct Explain<vote_field<Candidates, Voters>> {
   }
 };
 
+/// A hybrid automaton.
 template <typename... Modes>
 struct Explain<modes_field<Modes...>> {
+  /// The mode, the one it came from, and the field and guards of the mode.
   template <typename Percept, typename Memory>
   static void tell(modes_field<Modes...> const& field, Percept const& percept, Memory const& before, Account& account,
                    Place const& place) {

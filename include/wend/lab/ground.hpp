@@ -16,9 +16,10 @@ namespace wend::inline v0::lab {
 
 /// A disc of a ground, by its number in the world, and the metres from some point to its edge.
 struct NearDisc {
-  double gap;
-  std::uint32_t number;
+  double gap;  ///< metres; negative inside the disc
+  std::uint32_t number;  ///< place in World::discs
 
+  /// By gap, and of equal gaps by number: an order that is the same on every machine.
   friend bool operator<(NearDisc const& a, NearDisc const& b) noexcept {
     return a.gap < b.gap || (!(b.gap < a.gap) && a.number < b.number);
   }
@@ -28,6 +29,7 @@ struct NearDisc {
 /// time that does not grow with the world. Discs much larger than a cell are few or alike, or the search slows down.
 class Ground {
  public:
+  /// Sorts the discs: takes a time in proportion to their number.
   explicit Ground(World world) : world_(std::move(world)) {
     std::vector<WorldDisc> const& discs = world_.discs;
     if (discs.empty()) {
@@ -60,6 +62,7 @@ class Ground {
     }
   }
 
+  /// The world as it was given.
   [[nodiscard]] World const& world() const noexcept { return world_; }
   /// Whether any disc moves; the index is of no use then.
   [[nodiscard]] bool moving() const noexcept { return moving_; }

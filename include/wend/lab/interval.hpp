@@ -55,8 +55,10 @@ class BasicInterval {
   static constexpr double tiny = static_cast<double>(std::numeric_limits<Rounded>::denorm_min());
 
  public:
+  /// The number whose rounding is enclosed: double, or float for what a robot computes.
   using RoundedAs = Rounded;
 
+  /// [0, 0].
   BasicInterval() = default;
   /// The interval of one number: a constant is exact.
   explicit BasicInterval(Parameter x) noexcept : ends_{-static_cast<double>(x), static_cast<double>(x)} {
@@ -64,8 +66,12 @@ class BasicInterval {
       *this = whole();
     }
   }
+  /// The interval of one number; the whole line for one that is infinite or not a number.
   explicit BasicInterval(double x) noexcept : BasicInterval(x, x) {}
-  explicit BasicInterval(int x) noexcept : BasicInterval(static_cast<double>(x)) {}  // Eigen writes Scalar(0)
+  /// The interval of one number: Eigen writes Scalar(0).
+  explicit BasicInterval(int x) noexcept : BasicInterval(static_cast<double>(x)) {}
+  /// From low to high, both included. An end may be infinite; the whole line when they are in the wrong order or not
+  /// numbers.
   BasicInterval(double low, double high) noexcept : ends_{-low, high} {
     if (!(low <= high) || low == infinity || high == -infinity) {
       *this = whole();
@@ -75,9 +81,12 @@ class BasicInterval {
   template <typename Other>
   explicit BasicInterval(BasicInterval<Other> const& other) noexcept : ends_{-other.low(), other.high()} {}
 
+  /// Everything from minus to plus infinity.
   [[nodiscard]] static BasicInterval whole() noexcept { return BasicInterval(both(infinity)); }
 
+  /// The lower end; minus infinity where there is no bound.
   [[nodiscard]] double low() const noexcept { return -ends_[0]; }
+  /// The upper end; infinity where there is no bound.
   [[nodiscard]] double high() const noexcept { return ends_[1]; }
   /// A member: the middle, rounded to nearest. Where there is no bound on a side, 0 if that is inside, else the bound
   /// on the other side.
@@ -86,12 +95,19 @@ class BasicInterval {
   }
   /// high - low, rounded to nearest.
   [[nodiscard]] double width() const noexcept { return high() + ends_[0]; }
+  /// Whether x is a member; not-a-number never is.
   [[nodiscard]] bool contains(double x) const noexcept { return low() <= x && x <= high(); }
+  /// Whether there is a bound on both sides.
   [[nodiscard]] bool bounded() const noexcept { return ends_[0] < infinity && ends_[1] < infinity; }
-  /// The largest and the smallest absolute value inside.
+  /// The largest absolute value inside; infinity without a bound.
   [[nodiscard]] double mag() const noexcept { return std::max(ends_[0], ends_[1]); }
+  /// The smallest absolute value inside; 0 where 0 is inside.
   [[nodiscard]] double mig() const noexcept { return std::max({0.0, low(), -high()}); }
 
+  /// @name Arithmetic
+  /// @{
+
+  /// Holds what comes of any member of a and any member of b.
   [[nodiscard]] friend BasicInterval operator+(BasicInterval const& a, BasicInterval const& b) noexcept {
     return sum(a.ends_, b.ends_);
   }
@@ -126,7 +142,9 @@ class BasicInterval {
   }
   BasicInterval& operator+=(BasicInterval const& b) noexcept { return *this = *this + b; }
   BasicInterval& operator*=(BasicInterval const& b) noexcept { return *this = *this * b; }
+  /// @}
 
+  /// The roots of those members that have one; the whole line where none has.
   [[nodiscard]] friend BasicInterval sqrt(BasicInterval const& a) noexcept {
     if (a.high() < 0.0) {
       return whole();
@@ -139,10 +157,13 @@ class BasicInterval {
     Ends const ends = sizes(a.ends_);
     return outward(ends * absolute(ends), ends);
   }
+  /// Exact.
   [[nodiscard]] friend BasicInterval abs(BasicInterval const& a) noexcept { return BasicInterval(sizes(a.ends_)); }
+  /// Exact: the lesser of any member of a and any member of b.
   [[nodiscard]] friend BasicInterval min(BasicInterval const& a, BasicInterval const& b) noexcept {
     return BasicInterval(Ends{larger(a.ends_, b.ends_)[0], smaller(a.ends_, b.ends_)[1]});
   }
+  /// Exact: the greater of any member of a and any member of b.
   [[nodiscard]] friend BasicInterval max(BasicInterval const& a, BasicInterval const& b) noexcept {
     return BasicInterval(Ends{smaller(a.ends_, b.ends_)[0], larger(a.ends_, b.ends_)[1]});
   }
@@ -151,6 +172,10 @@ class BasicInterval {
     return BasicInterval(larger(a.ends_, b.ends_));
   }
 
+  /// @name Comparison
+  /// @{
+
+  /// Yes or no where the answer is the same for any member of a and any member of b, else both.
   [[nodiscard]] friend Trilean operator<(BasicInterval const& a, BasicInterval const& b) noexcept {
     return {a.low() < b.high(), a.high() >= b.low()};
   }
@@ -159,6 +184,9 @@ class BasicInterval {
   }
   [[nodiscard]] friend Trilean operator>(BasicInterval const& a, BasicInterval const& b) noexcept { return b < a; }
   [[nodiscard]] friend Trilean operator>=(BasicInterval const& a, BasicInterval const& b) noexcept { return b <= a; }
+  /// @}
+
+  /// a or b; where the mask is open the hull of both.
   [[nodiscard]] friend BasicInterval select(Trilean m, BasicInterval const& a, BasicInterval const& b) noexcept {
     return m.surely() ? a : m.surely_not() ? b : hull(a, b);
   }

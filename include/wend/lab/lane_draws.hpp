@@ -148,9 +148,10 @@ template <Number S>
 /// is over 5.8.
 template <Number S>
 struct NormalPair {
-  S first;
-  S second;
+  S first;  ///< independent of the second
+  S second;  ///< independent of the first
 };
+/// The pair of two words that are drawn apart.
 template <Number S>
 [[nodiscard]] NormalPair<S> normals_of(words_t<S> const& radius_word, words_t<S> const& angle_word) noexcept {
   S const radius = root(S(S(-2.0F) * log_of(uniform_of<S>(radius_word))));
@@ -170,8 +171,10 @@ template <Number S>
 template <Number S>
 class LaneDraws {
  public:
+  /// One 32-bit word a lane.
   using LaneWords = words_t<S>;
 
+  /// All lanes draw for run 0, from tick 0, until `start` says otherwise.
   explicit LaneDraws(std::uint64_t seed) noexcept
       : key_{static_cast<std::uint32_t>(seed), static_cast<std::uint32_t>(seed >> 32U)} {}
 
@@ -185,9 +188,11 @@ class LaneDraws {
   /// All lanes go on to their next tick.
   void next_tick() noexcept { tick_ = tick_ + 1U; }
 
+  /// Four words a lane, for what `purpose` says, and which `item` of many; the same address gives the same words.
   [[nodiscard]] std::array<LaneWords, 4> words(std::uint32_t purpose, LaneWords const& item) const noexcept {
     return philox_lanes<LaneWords>({run_low_, tick_, item, run_high_ ^ (purpose << 16U)}, key_);
   }
+  /// The words of item 0.
   [[nodiscard]] std::array<LaneWords, 4> words(std::uint32_t purpose) const noexcept {
     return words(purpose, LaneWords{});
   }

@@ -13,12 +13,16 @@ namespace wend::inline v0::lab {
 /// The number whose values are rows of `Lanes` machines: float for one.
 template <int Lanes>
 struct LanesOf {
+  /// A Pack of so many lanes.
   using type = Pack<Lanes>;
 };
+/// A row of one is no pack.
 template <>
 struct LanesOf<1> {
+  /// The number itself.
   using type = float;
 };
+/// Pack of so many lanes, or float for one.
 template <int Lanes>
 using lanes_t = typename LanesOf<Lanes>::type;
 
@@ -34,11 +38,14 @@ template <Number S>
 
 /// The value in one lane.
 [[nodiscard]] inline float lane(float x, int) noexcept { return x; }
+/// The yes or no in one lane.
 [[nodiscard]] inline bool lane(bool x, int) noexcept { return x; }
+/// The value in lane k, in [0, W).
 template <int W>
 [[nodiscard]] float lane(Pack<W> const& x, int k) noexcept {
   return x[k];
 }
+/// The yes or no in lane k of a pack's mask.
 template <typename Mask>
   requires requires(Mask const& m) { m.bits(); }
 [[nodiscard]] bool lane(Mask const& x, int k) noexcept {
@@ -47,6 +54,7 @@ template <typename Mask>
 
 /// x, with another value in one lane.
 inline void set_lane(float& x, int, float value) noexcept { x = value; }
+/// The same of a pack, in lane k of [0, W).
 template <int W>
 void set_lane(Pack<W>& x, int k, float value) noexcept {
   x.set(k, value);
@@ -64,6 +72,7 @@ template <Number S, typename F>
 
 /// Whether any lane says yes.
 [[nodiscard]] inline bool any(bool mask) noexcept { return mask; }
+/// Whether any lane of a pack's mask says yes.
 template <typename Mask>
   requires requires(Mask const& m) { m.bits(); }
 [[nodiscard]] bool any(Mask const& mask) noexcept {
@@ -79,9 +88,10 @@ template <typename Mask>
 /// compiler that keeps the order of operations: no -ffast-math.
 template <Number S>
 struct CarefulSum {
-  S value{S(0.0F)};
+  S value{S(0.0F)};  ///< the sum so far, rounded
   S carry{S(0.0F)};  ///< by how much value is too large
 
+  /// Adds one part.
   void operator+=(S const& part) noexcept {
     S const wanted = part - carry;
     S const sum = value + wanted;

@@ -12,9 +12,9 @@ namespace wend::inline v0::lab {
 
 /// When something is about to go wrong, and what chance to draw from: the same in every run of the same number.
 struct Moment {
-  std::uint32_t tick;
+  std::uint32_t tick;  ///< number of the tick, from 0
   double time;  ///< seconds
-  Draws const& draws;
+  Draws const& draws;  ///< those of the run
 };
 
 /// A fault, for `simulate`. Each function may change what it is given, and leaves it alone unless overridden. One
@@ -22,6 +22,7 @@ struct Moment {
 template <PlainNumber S = float>
 class Mishap {
  public:
+  /// Virtual, so that whoever holds one by its base may end it.
   virtual ~Mishap() = default;
 
   /// What the ranger reads, metres; empty where a loop has no ranger.

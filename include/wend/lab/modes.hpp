@@ -10,18 +10,19 @@ namespace wend::inline v0::lab {
 
 namespace detail {
 
-template <typename Memory>
-void gather_modes(Memory const& memory, std::uint32_t& modes) {
+// Calls f(on) for each switch in a memory, outermost first.
+template <typename Memory, typename F>
+void for_each_switch(Memory const& memory, F const& f) {
   if constexpr (std::is_aggregate_v<Memory> && !std::is_empty_v<Memory>) {
     if constexpr (requires { memory.is_inside; }) {
-      modes = (modes << 1U) | (memory.is_inside ? 1U : 0U);
+      f(memory.is_inside);
     }
     if constexpr (requires { memory.is_in; }) {
       for (bool const on : memory.is_in) {
-        modes = (modes << 1U) | (on ? 1U : 0U);
+        f(on);
       }
     }
-    v0::for_each_member(memory, memory, [&modes](auto const& member, auto const&) { gather_modes(member, modes); });
+    v0::for_each_member(memory, memory, [&f](auto const& member, auto const&) { for_each_switch(member, f); });
   }
 }
 
@@ -32,8 +33,16 @@ void gather_modes(Memory const& memory, std::uint32_t& modes) {
 template <typename Memory>
 [[nodiscard]] std::uint32_t modes_of(Memory const& memory) {
   std::uint32_t modes = 0;
-  detail::gather_modes(memory, modes);
+  detail::for_each_switch(memory, [&modes](bool on) { modes = (modes << 1U) | (on ? 1U : 0U); });
   return modes;
+}
+
+/// How many bits that has: the switches in a policy's memory.
+template <typename Memory>
+[[nodiscard]] int mode_count(Memory const& memory) {
+  int count = 0;
+  detail::for_each_switch(memory, [&count](bool) { ++count; });
+  return count;
 }
 
 }  // namespace wend::inline v0::lab

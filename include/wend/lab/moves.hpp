@@ -21,15 +21,15 @@ namespace wend::inline v0::lab {
 /// When a machine samples, and how late it acts: seconds. Readings are taken, `latency` later the wheels take up the
 /// new command at once, and hold it for one `period`; until then they hold the one before.
 struct Sampling {
-  double period = 0.05;
-  double latency = 0.05;
+  double period = 0.05;  ///< from one sample to the next, over 0
+  double latency = 0.05;  ///< from a sample to the wheels, 0 or more
 };
 
 /// How a point machine moves: its heading follows the course at once, `length` metres straight ahead in a tick of
 /// `period` seconds.
 struct Stride {
-  double length = 0.05;
-  double period = 0.05;
+  double length = 0.05;  ///< metres
+  double period = 0.05;  ///< seconds that the policy is told a step takes
 };
 
 /// How far off a disc may be seen: metres.
@@ -41,8 +41,10 @@ struct ReadingError {
 /// A set of states: positions, headings in radians, and what the loop or policy remembers.
 template <typename Decider>
 struct StateBox {
-  Interval x, y, heading;
-  memory_t<Decider, FloatInterval> memory;
+  Interval x,   ///< metres
+      y,        ///< metres
+      heading;  ///< radians, counter-clockwise
+  memory_t<Decider, FloatInterval> memory;  ///< what the decider may remember
 };
 
 namespace detail {

@@ -56,25 +56,37 @@ class Pack {
   /// One yes or no a lane.
   class Mask {
    public:
+    /// No in all lanes.
     Mask() = default;
+    /// Of a row of integers, each 0 for no or -1 for yes.
     explicit Mask(Bits const& bits) noexcept : bits_(bits) {}
+    /// The same answer in all lanes.
     explicit Mask(bool all) noexcept : bits_(Bits{} - (all ? 1 : 0)) {}
 
+    /// The answer in one lane, in [0, W).
     [[nodiscard]] bool operator[](int lane) const noexcept { return bits_[lane] != 0; }
+    /// @name Logic
+    /// @{
+
+    /// Lane by lane.
     [[nodiscard]] friend Mask operator&&(Mask const& a, Mask const& b) noexcept { return Mask(a.bits_ & b.bits_); }
     [[nodiscard]] friend Mask operator||(Mask const& a, Mask const& b) noexcept { return Mask(a.bits_ | b.bits_); }
     [[nodiscard]] friend Mask operator!(Mask const& a) noexcept { return Mask(~a.bits_); }
     [[nodiscard]] friend Mask select(Mask const& m, Mask const& a, Mask const& b) noexcept {
       return Mask((m.bits_ & a.bits_) | (~m.bits_ & b.bits_));
     }
+    /// @}
 
+    /// A row of integers, each 0 for no or -1 for yes.
     [[nodiscard]] Bits const& bits() const noexcept { return bits_; }
 
    private:
     Bits bits_{};
   };
 
+  /// 0 in all lanes.
   Pack() = default;
+  /// The same number in all lanes.
   explicit Pack(float all) noexcept : lanes_(Lanes{} + all) {}
   /// Lane k is f(k).
   template <typename F>
@@ -87,13 +99,20 @@ class Pack {
 
   /// From and to the compilers' own row of numbers, for what has to work on bits.
   explicit Pack(Lanes const& lanes) noexcept : lanes_(lanes) {}
+  /// The compilers' own row of numbers.
   [[nodiscard]] Lanes const& lanes() const noexcept { return lanes_; }
 
+  /// How many lanes there are.
   [[nodiscard]] static constexpr int width() noexcept { return W; }
+  /// The number in one lane, in [0, W).
   [[nodiscard]] float operator[](int lane) const noexcept { return lanes_[lane]; }
   /// Another value in one lane.
   void set(int lane, float value) noexcept { lanes_[lane] = value; }
 
+  /// @name Arithmetic
+  /// @{
+
+  /// Lane by lane, as a float alone.
   [[nodiscard]] friend Pack operator+(Pack const& a, Pack const& b) noexcept { return Pack(a.lanes_ + b.lanes_); }
   [[nodiscard]] friend Pack operator-(Pack const& a, Pack const& b) noexcept { return Pack(a.lanes_ - b.lanes_); }
   [[nodiscard]] friend Pack operator*(Pack const& a, Pack const& b) noexcept { return Pack(a.lanes_ * b.lanes_); }
@@ -101,16 +120,25 @@ class Pack {
   [[nodiscard]] friend Pack operator-(Pack const& a) noexcept { return Pack(-a.lanes_); }
   Pack& operator+=(Pack const& b) noexcept { return *this = *this + b; }  // Eigen's sums ask for these
   Pack& operator*=(Pack const& b) noexcept { return *this = *this * b; }
+  /// @}
 
+  /// @name Comparison
+  /// @{
+
+  /// Lane by lane; no where a number is not one.
   [[nodiscard]] friend Mask operator<(Pack const& a, Pack const& b) noexcept { return Mask(a.lanes_ < b.lanes_); }
   [[nodiscard]] friend Mask operator>(Pack const& a, Pack const& b) noexcept { return Mask(a.lanes_ > b.lanes_); }
   [[nodiscard]] friend Mask operator<=(Pack const& a, Pack const& b) noexcept { return Mask(a.lanes_ <= b.lanes_); }
   [[nodiscard]] friend Mask operator>=(Pack const& a, Pack const& b) noexcept { return Mask(a.lanes_ >= b.lanes_); }
+  /// @}
 
+  /// Each lane from a or b.
   [[nodiscard]] friend Pack select(Mask const& m, Pack const& a, Pack const& b) noexcept {
     return Pack(m.bits() ? a.lanes_ : b.lanes_);
   }
+  /// Lane by lane, correctly rounded; not-a-number for what is negative.
   [[nodiscard]] friend Pack sqrt(Pack const& a) noexcept { return Pack(roots(a.lanes_)); }
+  /// Lane by lane, by the bits of the exponents.
   [[nodiscard]] friend Mask finite(Pack const& a) noexcept {
     constexpr std::int32_t exponent = 0x7f800000;
     return Mask((reinterpret_cast<Bits>(a.lanes_) & exponent) != exponent);

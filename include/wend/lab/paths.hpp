@@ -83,12 +83,21 @@ template <typename F>
 /// more than the two courses, this takes one branch and the next time the other. To be used within for_each_path.
 class PathInterval {
  public:
+  /// [0, 0].
   PathInterval() = default;
+  /// The interval of one number.
   explicit PathInterval(Parameter x) noexcept : range_(x) {}
+  /// The interval of one number; the whole line for one that is not finite.
   explicit PathInterval(double x) noexcept : range_(x) {}
+  /// The same interval, to be followed on paths.
   explicit PathInterval(Interval const& range) noexcept : range_(range) {}
+  /// What the number can be on the present path.
   [[nodiscard]] Interval const& range() const noexcept { return range_; }
 
+  /// @name Arithmetic
+  /// @{
+
+  /// As of lab::Interval.
   [[nodiscard]] friend PathInterval operator+(PathInterval const& a, PathInterval const& b) noexcept {
     return PathInterval(a.range_ + b.range_);
   }
@@ -114,6 +123,12 @@ class PathInterval {
     return PathInterval(max(a.range_, b.range_));
   }
 
+  /// @}
+
+  /// @name Comparison
+  /// @{
+
+  /// What the present path answers. An answer that was open narrows no range.
   [[nodiscard]] friend bool operator<(PathInterval const& a, PathInterval const& b) noexcept {
     return answer(a.range_ < b.range_);
   }
@@ -122,9 +137,13 @@ class PathInterval {
   }
   [[nodiscard]] friend bool operator>(PathInterval const& a, PathInterval const& b) noexcept { return b < a; }
   [[nodiscard]] friend bool operator>=(PathInterval const& a, PathInterval const& b) noexcept { return b <= a; }
+  /// @}
+
+  /// a or b.
   [[nodiscard]] friend PathInterval select(bool m, PathInterval const& a, PathInterval const& b) noexcept {
     return m ? a : b;
   }
+  /// What the present path answers: open for what has no bound.
   [[nodiscard]] friend bool finite(PathInterval const& a) noexcept { return answer(finite(a.range_)); }
 
  private:

@@ -106,10 +106,12 @@ class Plant {
     }
   }
 
+  /// Where the machines really are: metres, and unit vectors along their noses.
   [[nodiscard]] Pose<S> pose() const noexcept { return {{x_.value, y_.value}, heading_}; }
   [[nodiscard]] S const& time() const noexcept { return time_.value; }  ///< seconds
   [[nodiscard]] S const& way() const noexcept { return way_.value; }  ///< metres driven
   [[nodiscard]] S const& last_dt() const noexcept { return last_dt_; }  ///< seconds of the last tick
+  /// The draws of the runs in the lanes.
   [[nodiscard]] LaneDraws<S> const& draws() const noexcept { return draws_; }
 
   /// The pose as the machine's own estimate has it, this tick. The estimated heading is off by twice the angle whose

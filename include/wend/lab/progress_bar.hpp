@@ -17,9 +17,13 @@ namespace wend::inline v0::lab {
 /// A bar on the error stream, for work that takes over a second. Nothing when that is not a terminal.
 class ProgressBar {
  public:
+  /// `what` stands before the bar.
   explicit ProgressBar(std::string what) : what_(std::move(what)), shown_(::isatty(STDERR_FILENO) == 1) {}
+  /// Wipes the bar off.
   ~ProgressBar() { clear(); }
+  /// One bar at a time has the line.
   ProgressBar(ProgressBar const&) = delete;
+  /// Neither is it assigned.
   ProgressBar& operator=(ProgressBar const&) = delete;
 
   /// From one thread at a time.

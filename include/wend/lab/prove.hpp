@@ -25,11 +25,15 @@ namespace wend::inline v0::lab {
 /// within their error, brings any point of the path during that tick nearer than `distance` to a disc: metres between
 /// edges.
 struct KeepsClear {
-  double distance = 0.0;
+  double distance = 0.0;  ///< metres between edges, 0 or more
 };
 
 /// What is known about a claim.
-enum class Verdict : std::uint8_t { proved, refuted, undecided };
+enum class Verdict : std::uint8_t {
+  proved,     ///< it holds for every state of the region
+  refuted,    ///< a counterexample was driven
+  undecided   ///< neither, within the budget and down to the finest boxes
+};
 
 /// The verdict in a word.
 [[nodiscard]] constexpr char const* text(Verdict verdict) noexcept {
@@ -40,16 +44,16 @@ enum class Verdict : std::uint8_t { proved, refuted, undecided };
 /// the readings are taken.
 template <typename Decider>
 struct Counterexample {
-  Pose<double> pose;
-  memory_t<Decider, float> memory;
-  std::vector<Disc<double>> seen;
+  Pose<double> pose;  ///< in the world's frame
+  memory_t<Decider, float> memory;  ///< what the loop or policy remembers
+  std::vector<Disc<double>> seen;  ///< in the world's frame, in the order of the world's discs
   double distance = 0.0;  ///< metres: the least on the path that follows
 };
 
 /// What prove returns.
 template <typename Decider>
 struct Proof {
-  Verdict verdict = Verdict::undecided;
+  Verdict verdict = Verdict::undecided;  ///< undecided where boxes are left
   std::int64_t boxes = 0;                                 ///< looked at
   std::vector<StateBox<Decider>> left;                    ///< not decided
   double left_share = 0.0;                                ///< of the region, by volume over positions and headings
@@ -58,7 +62,7 @@ struct Proof {
 
 /// How hard to try.
 struct ProofOptions : SearchOptions {
-  ReadingError error{};
+  ReadingError error{};  ///< how far off a disc may be seen
   double finest = 0.001;      ///< metres, or radians / 3: boxes no larger in any direction are left undecided
   int first_tries = 20'000;   ///< states tried by driving before any box is looked at
 };

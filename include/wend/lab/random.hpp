@@ -29,14 +29,15 @@ namespace wend::inline v0::lab {
 /// Draws for one run: addressed by what they are for, never by how many came before.
 class Draws {
  public:
+  /// Of run `run` in a campaign with this seed. Nothing is kept but the two.
   Draws(std::uint64_t seed, std::uint64_t run) noexcept
       : key_{static_cast<std::uint32_t>(seed), static_cast<std::uint32_t>(seed >> 32U)}, run_(run) {}
 
   /// What a draw is for, and which of many: two draws with another address are independent.
   struct Address {
     std::uint32_t purpose;  ///< under 65536; as many runs as fit 48 bits then have addresses of their own
-    std::uint32_t tick = 0;
-    std::uint32_t item = 0;
+    std::uint32_t tick = 0;  ///< number of the tick, 0 for what is drawn once a run
+    std::uint32_t item = 0;  ///< which of many on that tick, such as a beam or a disc
   };
 
   /// A number drawn evenly from (0, 1).

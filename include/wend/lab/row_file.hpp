@@ -26,17 +26,19 @@ namespace wend::inline v0::lab {
 /// What a campaign is: two of them with the same have the same rows.
 struct CampaignIdentity {
   std::uint32_t fingerprint = 0;  ///< of loop, vehicle and scenes: see campaign_fingerprint
-  std::uint64_t seed = 0;
+  std::uint64_t seed = 0;  ///< of all draws
   std::uint64_t runs = 0;  ///< in all, numbered from 0
 
+  /// Whether the rows are the same.
   friend bool operator==(CampaignIdentity const&, CampaignIdentity const&) = default;
 };
 
 /// A part of a campaign: shard `number`, from 1, of `of`.
 struct Shard {
-  std::uint64_t number = 1;
-  std::uint64_t of = 1;
+  std::uint64_t number = 1;  ///< in [1, of]
+  std::uint64_t of = 1;  ///< how many shards the campaign has
 
+  /// Whether it is the same part.
   friend bool operator==(Shard const&, Shard const&) = default;
 
   /// The number of its first run, of `runs`. Its last one is before the next shard's first.
@@ -45,6 +47,7 @@ struct Shard {
     std::uint64_t const before = number - 1;
     return runs / of * before + (before < runs % of ? before : runs % of);
   }
+  /// How many runs are its own, of `runs`. Shards differ by one run at most.
   [[nodiscard]] std::uint64_t size(std::uint64_t runs) const noexcept {
     return Shard{number + 1, of}.first(runs) - first(runs);
   }
@@ -52,10 +55,10 @@ struct Shard {
 
 /// The contents of a file of rows.
 struct RowFile {
-  CampaignIdentity identity;
-  Shard shard;
+  CampaignIdentity identity;  ///< which campaign the rows are of
+  Shard shard;  ///< which part of it
   bool complete = true;  ///< false when the shard was stopped before its last run
-  std::vector<RunRow> rows;
+  std::vector<RunRow> rows;  ///< one a run, by run number
 };
 
 namespace detail {
@@ -159,12 +162,14 @@ template <typename Enum>
 }  // namespace detail
 
 /// The text of a file of rows:
-///   wend rows 1
-///   campaign <fingerprint, hexadecimal> seed <seed> runs <runs of the whole campaign>
-///   shard <number>/<of>
-///   run,world,ending,... (the names; ending and status by their numbers in Ending and Status)
-///   <one line a row, numbers in decimal, such that they read back to the same bits; inf where there is no limit>
-///   end <rows> <complete or stopped> <CRC-32 of all bytes before this line, hexadecimal>
+///
+///     wend rows 1
+///     campaign <fingerprint, hexadecimal> seed <seed> runs <runs of the whole campaign>
+///     shard <number>/<of>
+///     run,world,ending,... (the names; ending and status by their numbers in Ending and Status)
+///     <one line a row, numbers in decimal, such that they read back to the same bits; inf where there is no limit>
+///     end <rows> <complete or stopped> <CRC-32 of all bytes before this line, hexadecimal>
+///
 /// Whatever is cut off, or changed by a few bits, no longer reads as one.
 [[nodiscard]] inline std::string text_of(RowFile const& file) {
   using detail::append;

@@ -13,16 +13,18 @@ namespace wend::inline v0::lab {
 struct RunRow {
   std::uint64_t run = 0;    ///< its number: with the campaign's seed, all there is to know to drive it again
   std::uint64_t world = 0;  ///< which of the worlds; the run's own number where each run has a world of its own
-  Ending ending = Ending::time_out;
-  Status last_status = Status::ok;
-  int switches = 0;
-  double time = 0.0;
-  double path_length = 0.0;
-  double straight_length = 0.0;
+  Ending ending = Ending::time_out;  ///< how it ended
+  Status last_status = Status::ok;  ///< what the loop said on the last tick
+  int switches = 0;  ///< ticks on which a guard changed its mind
+  double time = 0.0;  ///< seconds from start to end
+  double path_length = 0.0;  ///< metres driven
+  double straight_length = 0.0;  ///< metres, from start to goal
+  /// Metres over the whole path; infinite in an empty world.
   double least_clearance = std::numeric_limits<double>::infinity();
+  /// Seconds between two switches; infinite with fewer than two.
   double least_dwell = std::numeric_limits<double>::infinity();
-  Pose<double> start;
-  Vec2<double> goal{0.0, 0.0};
+  Pose<double> start;  ///< in the world's frame
+  Vec2<double> goal{0.0, 0.0};  ///< metres, in the world's frame
 
   /// Same bits in every number.
   friend bool operator==(RunRow const& a, RunRow const& b) noexcept {

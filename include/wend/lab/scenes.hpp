@@ -26,8 +26,10 @@ namespace wend::inline v0::lab {
 /// goal in it; or `scene`, which makes a world and a trip for each run. Both are given the run's own draws, of which
 /// any purpose may be used, and may be called from several threads at once. They must depend on nothing else.
 struct Scenes {
-  std::vector<World> worlds{};
+  std::vector<World> worlds{};  ///< to draw one from; not looked at where `scene` is set
+  /// Draws a start and a goal in the world that was drawn; not asked where `scene` is set.
   std::function<Trip(Ground const&, Draws const&)> trip{};
+  /// Makes a world and a trip for each run; none unless set.
   std::function<Scene(Draws const&)> scene{};
 };
 

@@ -31,14 +31,14 @@ struct SearchProgress {
 /// Limits of a search.
 struct SearchOptions {
   std::int64_t box_budget = 2'000'000;  ///< boxes to look at, at the most (threads may overrun it by a few dozen)
-  int threads = 1;
+  int threads = 1;  ///< 1 or more, that look at boxes side by side
   std::function<void(SearchProgress)> progress;  ///< called now and then, from one thread at a time
 };
 
 /// What a search ends with.
 template <typename Box>
 struct SearchResult {
-  bool failed = false;
+  bool failed = false;  ///< whether some box fails
   std::int64_t boxes = 0;  ///< looked at
   std::vector<Box> left;   ///< not decided: too small to split, or beyond the budget
 };

@@ -58,6 +58,7 @@ struct Merged {
   std::vector<std::string> problems{};  ///< one sentence for each file or shard that is not as it should be
   std::vector<Shard> run_again{};       ///< the shards without a whole file
 
+  /// Whether no row is missing.
   [[nodiscard]] bool complete() const noexcept { return whole.complete; }
 };
 

@@ -14,8 +14,8 @@ namespace wend::inline v0::lab {
 
 /// A world and a trip through it.
 struct Scene {
-  World world;
-  Trip trip;
+  World world;  ///< what stands and moves in it
+  Trip trip;  ///< from where to where
 };
 
 namespace detail {

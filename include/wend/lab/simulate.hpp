@@ -26,20 +26,20 @@ namespace wend::inline v0::lab {
 
 /// From where to where, and for how long at most.
 struct Trip {
-  Pose<double> start;
-  Vec2<double> goal{0.0, 0.0};
+  Pose<double> start;  ///< in the world's frame
+  Vec2<double> goal{0.0, 0.0};  ///< metres, in the world's frame
   double time_limit = 120.0;  ///< seconds
 };
 
 /// One tick as it was: the truth of the world beside the decision.
 struct Tick {
   double time = 0.0;  ///< seconds
-  Pose<double> pose;
+  Pose<double> pose;  ///< where the machine really is, in the world's frame
   double clearance = 0.0;  ///< metres, from the body's edge to the nearest disc's; infinite in an empty world
-  WheelRates<double> wheels;
-  BodyVelocity<double> body;
-  std::uint32_t modes = 0;
-  Status status = Status::ok;
+  WheelRates<double> wheels;  ///< radians a second that the loop asks for
+  BodyVelocity<double> body;  ///< what it makes of the body: metres a second, radians a second
+  std::uint32_t modes = 0;  ///< a bit for each `guarded` and each mode but the first: see modes_of
+  Status status = Status::ok;  ///< what the loop says
 };
 
 /// How a run ended.
@@ -51,8 +51,8 @@ enum class Ending : std::uint8_t {
 
 /// One simulated run, and what to know about it.
 struct Run {
-  Ending ending = Ending::time_out;
-  Status last_status = Status::ok;
+  Ending ending = Ending::time_out;  ///< how it ended
+  Status last_status = Status::ok;  ///< what the loop said on the last tick
   double time = 0.0;             ///< seconds
   double path_length = 0.0;      ///< metres
   double straight_length = 0.0;  ///< metres, from start to goal

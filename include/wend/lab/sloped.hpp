@@ -18,10 +18,14 @@ namespace wend::inline v0::lab {
 /// The answer to a comparison of two Sloped, and which two: so that `select(a < b, a, b)` is known as the lesser of
 /// both, which has a kink but does not jump. After && || ! that is forgotten.
 struct SlopedMask {
-  Trilean truth;
+  Trilean truth;  ///< the answer itself
   std::uint64_t lesser = 0;  ///< the one that is less if the answer is yes; 0 when forgotten
-  std::uint64_t other = 0;
+  std::uint64_t other = 0;  ///< the other of the two; 0 when forgotten
 
+  /// @name Logic
+  /// @{
+
+  /// Of the answers; which two were compared is forgotten.
   [[nodiscard]] friend SlopedMask operator!(SlopedMask const& a) noexcept { return {!a.truth}; }
   [[nodiscard]] friend SlopedMask operator&&(SlopedMask const& a, SlopedMask const& b) noexcept {
     return {a.truth && b.truth};
@@ -32,6 +36,7 @@ struct SlopedMask {
   [[nodiscard]] friend SlopedMask select(SlopedMask const& m, SlopedMask const& a, SlopedMask const& b) noexcept {
     return {select(m.truth, a.truth, b.truth)};
   }
+  /// @}
 };
 
 /// What a number computed from a pose can be over a box of positions, and how fast it changes: an enclosure of its
@@ -40,8 +45,11 @@ struct SlopedMask {
 /// on both sides of each and so are bounds on differences too. For one that may jump within the box they are infinite.
 class Sloped {
  public:
+  /// The constant 0.
   Sloped() = default;
+  /// A constant: it has no slope.
   explicit Sloped(Parameter x) noexcept : value_(x) {}
+  /// A constant: it has no slope.
   explicit Sloped(double x) noexcept : value_(x) {}
   /// Coordinate 0 (x) or 1 (y) of a position: metres.
   [[nodiscard]] static Sloped position(Interval const& range, int axis) noexcept {
@@ -51,13 +59,19 @@ class Sloped {
   /// A component of any heading at all.
   [[nodiscard]] static Sloped any_heading() noexcept { return {Interval(-1.0, 1.0), Interval(), Interval(), 0.0, 1.0}; }
 
+  /// What the number can be over the box.
   [[nodiscard]] Interval const& value() const noexcept { return value_; }
+  /// What its gradient by position can be over the box: per metre, along x and y.
   [[nodiscard]] Vec2<Interval> gradient() const noexcept { return {along_x_, along_y_}; }
   /// Per metre: no two positions in the box differ by more than this times their distance, if it is convex.
   [[nodiscard]] double per_metre() const noexcept { return per_metre_; }
   /// Per radian that the nose turns.
   [[nodiscard]] double per_radian() const noexcept { return per_radian_; }
 
+  /// @name Arithmetic
+  /// @{
+
+  /// Bounds of the value, and of its slopes by the chain rule.
   [[nodiscard]] friend Sloped operator+(Sloped const& a, Sloped const& b) noexcept {
     return {a.value_ + b.value_, a.along_x_ + b.along_x_, a.along_y_ + b.along_y_, up(a.per_metre_ + b.per_metre_),
             up(a.per_radian_ + b.per_radian_)};
@@ -79,26 +93,37 @@ class Sloped {
   }
   Sloped& operator+=(Sloped const& b) noexcept { return *this = *this + b; }
   Sloped& operator*=(Sloped const& b) noexcept { return *this = *this * b; }
+  /// @}
+
+  /// Where 0 is inside, the slopes have no bound.
   [[nodiscard]] friend Sloped sqrt(Sloped const& a) noexcept {
     Interval const root = sqrt(a.value_);
     return a.mapped(root, Interval(0.5) / root);
   }
+  /// x^2.
   [[nodiscard]] friend Sloped sqr(Sloped const& a) noexcept { return a.mapped(sqr(a.value_), a.value_ + a.value_); }
+  /// |x|: a kink at 0, no jump.
   [[nodiscard]] friend Sloped abs(Sloped const& a) noexcept {
     return a.mapped(abs(a.value_), a.value_.low() >= 0.0 ? Interval(1.0)
                                    : a.value_.high() <= 0.0 ? Interval(-1.0) : Interval(-1.0, 1.0));
   }
+  /// The lesser: a kink where they are equal, no jump.
   [[nodiscard]] friend Sloped min(Sloped const& a, Sloped const& b) noexcept {
     return a.value_.high() < b.value_.low()   ? a
            : b.value_.high() < a.value_.low() ? b
                                               : a.joined(b, min(a.value_, b.value_));
   }
+  /// The greater: a kink where they are equal, no jump.
   [[nodiscard]] friend Sloped max(Sloped const& a, Sloped const& b) noexcept {
     return a.value_.high() < b.value_.low()   ? b
            : b.value_.high() < a.value_.low() ? a
                                               : a.joined(b, max(a.value_, b.value_));
   }
 
+  /// @name Comparison
+  /// @{
+
+  /// The answer over the whole box, and which two were compared.
   [[nodiscard]] friend SlopedMask operator<(Sloped const& a, Sloped const& b) noexcept {
     return {a.value_ < b.value_, a.name_, b.name_};
   }
@@ -107,6 +132,9 @@ class Sloped {
   }
   [[nodiscard]] friend SlopedMask operator>(Sloped const& a, Sloped const& b) noexcept { return b < a; }
   [[nodiscard]] friend SlopedMask operator>=(Sloped const& a, Sloped const& b) noexcept { return b <= a; }
+  /// @}
+
+  /// Yes where the value is bounded; the slopes are not looked at.
   [[nodiscard]] friend SlopedMask finite(Sloped const& a) noexcept { return {finite(a.value_)}; }
   /// Where the answer is open, the choice may jump from one to the other, unless it is the lesser or the greater of the
   /// two that were compared.

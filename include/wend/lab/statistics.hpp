@@ -103,8 +103,8 @@ inline void expect_counts(char const* who, std::uint64_t count, std::uint64_t ru
 
 /// Two bounds on a probability.
 struct Bounds {
-  double low = 0.0;
-  double high = 1.0;
+  double low = 0.0;  ///< in [0, 1]
+  double high = 1.0;  ///< in [0, 1], not under `low`
 };
 
 /// Clopper and Pearson (1934): the probability behind `count` of `runs` lies within with at least this confidence,

@@ -28,8 +28,11 @@ class StillWorld {
     }
   }
 
+  /// In the order of the world.
   [[nodiscard]] DiscSet<double, Capacity> const& discs() const noexcept { return discs_; }
+  /// Metres, in the world's frame.
   [[nodiscard]] Vec2<double> const& goal() const noexcept { return goal_; }
+  /// Metres.
   [[nodiscard]] Parameter robot_radius() const noexcept { return robot_radius_; }
 
   /// The same discs on another number, exact.
@@ -49,6 +52,7 @@ class StillWorld {
     constexpr Parameter tick = 0.05F;  // seconds; matters to nobody who remembers nothing
     return look(Pose<S>{position, heading}, on<S>(goal_), discs, S(robot_radius_), S(tick));
   }
+  /// With the nose along the heading that the world was made with.
   template <Number S>
   [[nodiscard]] Percept<S, Capacity> percept(Vec2<S> const& position,
                                              DiscSet<S, Capacity> const& discs) const noexcept {

@@ -18,17 +18,19 @@ namespace wend::inline v0::lab {
 /// (radians; clockwise when `to` is less than `from`). Metres.
 struct Stretch {
   Vec2<double> start{0.0, 0.0};  ///< of an arc too, to 1e-9 m: where two stretches meet, both give the very same point
-  Vec2<double> end{0.0, 0.0};
-  Vec2<double> centre{0.0, 0.0};
+  Vec2<double> end{0.0, 0.0};  ///< of an arc too
+  Vec2<double> centre{0.0, 0.0};  ///< of an arc
   double radius = 0.0;  ///< 0 for a straight one
-  double from = 0.0;
-  double to = 0.0;
+  double from = 0.0;  ///< radians, at the start of an arc
+  double to = 0.0;  ///< radians, at its end
 
+  /// From a straight to b.
   [[nodiscard]] static Stretch straight(Vec2<double> const& a, Vec2<double> const& b) {
     Stretch s;
     s.start = a, s.end = b;
     return s;
   }
+  /// Along the edge of a disc, from one angle to another.
   [[nodiscard]] static Stretch round(Disc<double> const& circle, double from, double to) {
     Stretch s;
     s.centre = circle.centre, s.radius = circle.radius, s.from = from, s.to = to;
@@ -79,7 +81,7 @@ struct Stretch {
   };
   std::array<Vec2<double>, 5> const corners{low, {high.x(), low.y()}, high, {low.x(), high.y()}, low};
   for (std::size_t side = 0; side < 4; ++side) {
-    Vec2<double> const a = corners[side];
+    Vec2<double> const& a = corners[side];
     Vec2<double> const along = corners[side + 1] - a;
     std::vector<double> cuts{0.0, 1.0};
     for (Disc<double> const& hole : holes) {  // |a + t along - c|^2 = r^2

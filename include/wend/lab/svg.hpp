@@ -33,8 +33,8 @@ namespace wend::inline v0::lab {
 
 /// A run to be drawn, with the name that the legend gives it. The run must have kept its ticks.
 struct DrawnRun {
-  std::string name;
-  Run run;
+  std::string name;  ///< as it is; it is escaped when drawn
+  Run run;  ///< with its ticks
 };
 
 namespace detail {
@@ -100,7 +100,7 @@ inline std::string svg_head(Sheet const& sheet, std::string_view title, std::siz
 inline std::string svg_axes(Sheet const& s) {
   double const step = round_step(s.right - s.left);
   int const decimals = step < 0.1 ? 2 : step < 1.0 ? 1 : 0;
-  std::string svg = "<g stroke=\"#e4e0d6\" stroke-width=\"1\" fill=\"#6a6a6a\" font-size=\"12\">\n";
+  std::string svg = "<g class=\"axes\" stroke=\"#e4e0d6\" stroke-width=\"1\" fill=\"#6a6a6a\" font-size=\"12\">\n";
   // Counted, so that 0 is 0 and not -1e-17. Adding 0 takes the sign off a zero.
   for (double k = std::ceil(s.left / step); k * step <= s.right; k += 1.0) {
     double const x = k * step;
@@ -120,7 +120,7 @@ inline std::string svg_axes(Sheet const& s) {
 
 // Discs at time 0; moving ones get a line as long as 5 s of travel.
 inline std::string svg_discs(Sheet const& sheet, World const& world) {
-  std::string svg = "<g fill=\"#cfc9ba\" stroke=\"#7d7766\" stroke-width=\"1\">\n";
+  std::string svg = "<g class=\"discs\" fill=\"#cfc9ba\" stroke=\"#7d7766\" stroke-width=\"1\">\n";
   for (WorldDisc const& d : world.discs) {
     double const cx = sheet.x(d.disc.centre.x());
     double const cy = sheet.y(d.disc.centre.y());

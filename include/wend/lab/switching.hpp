@@ -33,12 +33,13 @@ enum class SurfaceKind : std::uint8_t {
 
 /// A box with a piece of the surface in it.
 struct SurfacePiece {
-  Region box;
-  SurfaceKind kind = SurfaceKind::undecided;
+  Region box;  ///< metres
+  SurfaceKind kind = SurfaceKind::undecided;  ///< what a machine does there
   Vec2<double> point{0.0, 0.0};  ///< on the surface, in the middle of the piece, to second order in the box's size
   double length = 0.0;           ///< metres, to second order; 0 where the surface only may touch the box
 };
 
+/// What `switching` found.
 struct SwitchingReport {
   double hysteresis = 0.0;           ///< between the thresholds, in the signal's unit
   std::vector<SurfacePiece> pieces;  ///< for equal thresholds; together they hold the whole surface
@@ -58,6 +59,7 @@ struct SwitchingReport {
   }
 };
 
+/// Of which machine, and how hard to try.
 struct SwitchingOptions {
   Parameter robot_radius = 0.20F;  ///< metres
   double keep_off = 0.0;           ///< metres: places with less clearance are not looked at
@@ -67,8 +69,8 @@ struct SwitchingOptions {
   double coarsest = 0.02;          ///< metres: boxes of the surface are split to this in any case
   double finest = 0.0005;          ///< metres: and to this before they are left undecided
   Vec2<double> heading{1.0, 0.0};  ///< of the nose, for courses and surfaces that depend on it
-  std::int64_t box_budget = 400'000;
-  int threads = 1;
+  std::int64_t box_budget = 400'000;  ///< boxes to look at, at the most
+  int threads = 1;  ///< 1 or more, that look at boxes side by side
 };
 
 namespace detail {
@@ -265,6 +267,7 @@ template <int Capacity = 32, typename Signal, typename Inside, typename Outside>
                                      static_cast<double>(policy.guard.leave) - enter, policy.inside, policy.outside,
                                      world, goal, region, options);
 }
+/// The same of a guard made by `above`.
 template <int Capacity = 32, typename Signal, typename Inside, typename Outside>
 [[nodiscard]] SwitchingReport switching(guarded_field<above_guard<Signal>, Inside, Outside> const& policy,
                                         World const& world, Vec2<double> const& goal, Region const& region,

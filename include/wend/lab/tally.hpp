@@ -18,11 +18,11 @@ namespace wend::inline v0::lab {
 
 /// A number's quantiles over many runs: all not-a-number where there was none.
 struct Spread {
-  double least = std::numeric_limits<double>::quiet_NaN();
+  double least = std::numeric_limits<double>::quiet_NaN();  ///< the smallest of all
   double low = std::numeric_limits<double>::quiet_NaN();     ///< a twentieth of the runs is below
   double median = std::numeric_limits<double>::quiet_NaN();  ///< half of them
   double high = std::numeric_limits<double>::quiet_NaN();    ///< a twentieth is above
-  double most = std::numeric_limits<double>::quiet_NaN();
+  double most = std::numeric_limits<double>::quiet_NaN();  ///< the largest of all
 };
 
 /// The quantiles of numbers in any order.
@@ -34,16 +34,17 @@ struct Spread {
 
 /// What became of many runs.
 struct Tally {
-  std::uint64_t runs = 0;
-  std::uint64_t arrived = 0;
-  std::uint64_t contacts = 0;
-  std::uint64_t time_outs = 0;
+  std::uint64_t runs = 0;  ///< in all: the three below add up to it
+  std::uint64_t arrived = 0;  ///< that reached the goal
+  std::uint64_t contacts = 0;  ///< that touched a disc
+  std::uint64_t time_outs = 0;  ///< that did neither in the time allowed
   Spread clearance;  ///< metres: the least of each run
   Spread time;       ///< seconds, of those that arrived
   Spread switches;   ///< a run
   double least_dwell = std::numeric_limits<double>::infinity();  ///< seconds, of all runs
 };
 
+/// Counts and quantiles of rows in any order.
 [[nodiscard]] inline Tally tally(std::span<RunRow const> rows) {
   Tally result;
   std::vector<double> clearances, times, switches;
@@ -91,7 +92,7 @@ struct Comparison {
   std::uint64_t both = 0;         ///< arrived
   std::uint64_t only_first = 0;   ///< only the first one arrived
   std::uint64_t only_second = 0;  ///< only the second one
-  std::uint64_t neither = 0;
+  std::uint64_t neither = 0;  ///< neither arrived
   double p_value = 1.0;  ///< of McNemar's exact test, that they arrive equally often
   Spread time_difference;  ///< seconds by which the second took longer, where both arrived
   Spread

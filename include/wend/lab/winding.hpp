@@ -74,9 +74,11 @@ class Cone {
 template <typename Policy, int Capacity>
 class CourseMap {
  public:
+  /// Policy and world are referred to, and must outlive it.
   CourseMap(Policy const& policy, StillWorld<Capacity> const& world)
       : policy_(policy), world_(world), on_paths_(world.template discs_on<PathInterval>()) {}
 
+  /// The course at one point, in double precision.
   [[nodiscard]] Course<double> at(Vec2<double> const& point) const {
     return world_.course(policy_, point, world_.discs());
   }

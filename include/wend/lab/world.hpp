@@ -16,14 +16,15 @@ namespace wend::inline v0::lab {
 
 /// A disc at time 0, and its velocity in metres a second.
 struct WorldDisc {
-  Disc<double> disc;
-  Vec2<double> velocity{0.0, 0.0};
+  Disc<double> disc;  ///< metres, at time 0
+  Vec2<double> velocity{0.0, 0.0};  ///< metres a second; at rest unless given
 };
 
 /// Discs at rest or moving, in metres.
 struct World {
-  std::vector<WorldDisc> discs;
+  std::vector<WorldDisc> discs;  ///< in any order; their places are their numbers
 
+  /// Adds a disc: metres, and metres a second.
   void add(double x, double y, double radius, Vec2<double> const& velocity = {0.0, 0.0}) {
     discs.push_back({{{x, y}, radius}, velocity});
   }
@@ -57,8 +58,8 @@ struct World {
 
 /// A rectangle of positions, metres.
 struct Region {
-  Vec2<double> low{0.0, 0.0};
-  Vec2<double> high{0.0, 0.0};
+  Vec2<double> low{0.0, 0.0};  ///< the corner with the least coordinates
+  Vec2<double> high{0.0, 0.0};  ///< the corner with the greatest coordinates
 };
 
 /// Throws std::invalid_argument for a world with discs that move, or more of them than `capacity`; `who` is named in

@@ -35,8 +35,8 @@ template <std::floating_point S>
 /// Tangents of the angles of two front wheels, each to the left positive.
 template <Number S>
 struct FrontWheels {
-  S left{S(0.0F)};
-  S right{S(0.0F)};
+  S left{S(0.0F)};  ///< tangent of its angle
+  S right{S(0.0F)};  ///< tangent of its angle
 };
 
 /// How a car is steered to a course. It turns by driving, never in place: a course abeam or behind is driven to by the
@@ -48,10 +48,10 @@ struct FrontWheels {
 /// between them, so it does not dither there; and where a policy leads away from what blocks the nose, it backs off,
 /// and goes on nose first once its course is ahead again: a turn in three moves. Its sensors have to look backward too.
 struct ArcSteering {
-  Parameter look_ahead = 0.6F;     ///< metres, at least 1 mm; shorter steers harder
-  Parameter least_share = 0.3F;    ///< share of the speed that is kept where the course is not ahead, over 0
+  Parameter look_ahead = 0.6F;  ///< metres, at least 1 mm; shorter steers harder
+  Parameter least_share = 0.3F;  ///< share of the speed that is kept where the course is not ahead, over 0
   Parameter max_turn_rate = 1.5F;  ///< radians a second: a tight arc is driven no faster than this
-  bool reverses = false;           ///< whether it may drive backward
+  bool reverses = false;  ///< whether it may drive backward
 
   /// `heading` and course in one frame; `allowed` in metres a second. A course exactly astern is turned to leftwards.
   /// A course without direction gives no motion, nor does one that is not a number.
@@ -95,6 +95,7 @@ struct ArcSteering {
 /// A car, as the one-track model with its reference point on the rear axle: turn_rate = speed tangent / wheelbase.
 /// It rolls without slipping, forward or backward, and cannot turn in place.
 struct Ackermann {
+  /// How a loop steers it, unless told otherwise.
   using Steering = ArcSteering;
 
   Parameter wheelbase = 0.30F;  ///< metres from the rear axle to the front one

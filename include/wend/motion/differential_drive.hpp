@@ -9,8 +9,8 @@ namespace wend::inline v0 {
 /// Wheel rates, radians a second, forward positive.
 template <Number S>
 struct WheelRates {
-  S left{S(0.0F)};
-  S right{S(0.0F)};
+  S left{S(0.0F)};  ///< of the left wheel
+  S right{S(0.0F)};  ///< of the right wheel
 };
 
 /// Two wheels side by side.

@@ -35,7 +35,7 @@ struct SteeringOf<D> {
 
 }  // namespace detail
 
-/// How a drive's body can move: its member template `Body<S>`, or a BodyVelocity<S> where it has none.
+/// How a drive's body can move: its member template `Body<S>`, or a `BodyVelocity<S>` where it has none.
 template <typename D, Number S>
 using body_t = typename detail::BodyOf<D, S>::type;
 

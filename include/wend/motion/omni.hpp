@@ -16,6 +16,7 @@ namespace wend::inline v0 {
 /// Rates of N wheels, radians a second; positive drives the body counter-clockwise.
 template <Number S, int N>
 struct OmniRates {
+  /// Counter-clockwise round the body, in the order of Omni::at.
   std::array<S, static_cast<std::size_t>(N)> rates{};
 };
 
@@ -66,7 +67,9 @@ struct OmniSteering {
 template <int N = 3>
 struct Omni {
   static_assert(N >= 3, "wend: Omni<N> needs three wheels at least to go every way; write Omni<3>");
+  /// How a loop steers it, unless told otherwise.
   using Steering = OmniSteering;
+  /// How its body can move: forward, sideways and turning at once.
   template <Number S>
   using Body = PlanarVelocity<S>;
 

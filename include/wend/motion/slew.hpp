@@ -64,6 +64,7 @@ struct Slew {
   Parameter stop_braking = 2.5F;        ///< metres a second squared
   Parameter stop_turn_braking = 20.0F;  ///< radians a second squared
 
+  /// What a machine was last told to do. Rest at first.
   template <typename Body>
   struct Memory {
     Body body{};  ///< what the wheels were last told to make of the body
@@ -106,6 +107,7 @@ struct SmoothSlew {
   Parameter stop_braking = 2.5F;  ///< metres a second squared
   Parameter stop_turn_braking = 20.0F;  ///< radians a second squared
 
+  /// What a machine was last told to do, and how that changed. Rest at first.
   template <typename Body>
   struct Memory {
     Body body{};  ///< what the wheels were last told to make of the body

@@ -15,7 +15,7 @@ namespace wend::inline v0 {
 /// One line of a calibration table.
 struct CalibrationPoint {
   Parameter reading;  ///< in the ranger's own unit: volts, counts, microseconds
-  Parameter metres;
+  Parameter metres;  ///< the distance it stands for, positive
 };
 
 /// A table with straight lines between its points, made by `calibration`, which checks it.
@@ -26,7 +26,7 @@ struct Calibration {
   /// Readings below and above which the ranger is broken (a wire off, a short circuit): not-a-number, so that the beam
   /// does not count as alive.
   Parameter least_reading = -std::numeric_limits<Parameter>::max();
-  Parameter greatest_reading = std::numeric_limits<Parameter>::max();
+  Parameter greatest_reading = std::numeric_limits<Parameter>::max();  ///< in the ranger's own unit
   Parameter no_echo = std::numeric_limits<Parameter>::infinity();  ///< what the Ring behind it takes for no echo
 
   /// Metres for a reading. Beyond the far end of the table there is nothing: `no_echo`. Beyond the near end something
@@ -91,8 +91,8 @@ template <std::size_t Points>
 /// A sensing whose readings come through a calibration: `calibrated(table, ring)`.
 template <typename Table, typename Sensing>
 struct Calibrated {
-  Table table;
-  Sensing sensing;
+  Table table;  ///< from readings to metres
+  Sensing sensing;  ///< what is asked with the metres
 
   /// As the sensing's own, of readings in the table's unit.
   template <PlainNumber S, std::size_t Beams, typename Discs>

@@ -176,7 +176,7 @@ template <typename PointAt>
 }  // namespace detail
 
 /// The algebraic circle of Kasa (1976, IEEE Trans. Instrum. Meas. 25:8-14): the least sum of (|p - c|^2 - r^2)^2. Two
-/// passes and no iteration; it comes out too small on short noisy arcs. `point(i)` gives a Vec2<S> for i in
+/// passes and no iteration; it comes out too small on short noisy arcs. `point(i)` gives a `Vec2<S>` for i in
 /// [0, count). Not converged under three points, where all lie on one line, or where a number is not finite.
 template <PlainNumber S, typename PointAt>
 [[nodiscard]] CircleFit<S> kasa_circle(int count, PointAt const& point) noexcept {
@@ -190,7 +190,7 @@ template <PlainNumber S, typename PointAt>
 }
 
 /// The geometric circle: the least sum of squared distances of the points from it, by Gauss-Newton from Kasa's
-/// (Gander, Golub and Strebel 1994, BIT 34:558-578). `point(i)` gives a Vec2<S> for i in [0, count); it is asked for
+/// (Gander, Golub and Strebel 1994, BIT 34:558-578). `point(i)` gives a `Vec2<S>` for i in [0, count); it is asked for
 /// each point up to Passes + 2 times. Settled when the centre moves by no more than `tolerance` of the radius. Where
 /// it has not converged the disc is the best circle met, or one far away when there was none.
 template <PlainNumber S, int Passes = 40, typename PointAt>

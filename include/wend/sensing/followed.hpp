@@ -32,17 +32,18 @@ auto sense(Sensing const& sensing, Ranges const& ranges, Pose<S> const& pose, S 
 /// A sensing whose discs a step then works on: `step(pose, dt, discs, memory)` with a member template `Memory<S>`, such
 /// as a Tracker or a KeepInMind. It is a sensing itself, so steps can follow each other:
 ///
-///   constexpr auto seeing = followed_by(followed_by(ring, Tracker<16>{}), KeepInMind<16>{});
-///   constexpr Loop<Policy, std::remove_const_t<decltype(seeing)>> loop{.policy = policy, .sensing = seeing};
+///     constexpr auto seeing = followed_by(followed_by(ring, Tracker<16>{}), KeepInMind<16>{});
+///     constexpr Loop<Policy, std::remove_const_t<decltype(seeing)>> loop{.policy = policy, .sensing = seeing};
 template <typename Sensing, typename Step>
 struct Followed {
-  [[no_unique_address]] Sensing sensing;
-  Step step{};
+  [[no_unique_address]] Sensing sensing;  ///< what makes discs of readings
+  Step step{};  ///< what works on them
 
+  /// What the two remember.
   template <PlainNumber S>
   struct Memory {
-    [[no_unique_address]] detail::PlacedMemory<Sensing, S, Followed, 0> sensing;
-    typename Step::template Memory<S> step;
+    [[no_unique_address]] detail::PlacedMemory<Sensing, S, Followed, 0> sensing;  ///< of the sensing
+    typename Step::template Memory<S> step;  ///< of the step
   };
 
   /// As the sensing's own; `pose` is the robot's, in any one frame, and dt the seconds since the last tick.

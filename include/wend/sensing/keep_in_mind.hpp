@@ -34,8 +34,10 @@ struct KeepInMind {
   Parameter nearest = 0.05F;  ///< metres: what has its edge nearer than this cannot be seen
   Parameter reach = 4.0F;  ///< metres: what has its edge farther than this cannot be seen
 
+  /// What is kept between ticks.
   template <PlainNumber S>
   struct Memory {
+    /// Those with a negative age are free places.
     std::array<Remembered<S>, static_cast<std::size_t>(Kept)> discs{};
   };
 

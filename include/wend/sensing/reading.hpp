@@ -16,10 +16,10 @@ namespace wend::inline v0 {
 struct RingCount {
   int echoes = 0;        ///< a range between the least and the greatest this ranger can measure
   int no_echo = 0;       ///< the ranger's own sign that nothing came back
-  int not_a_number = 0;
+  int not_a_number = 0;  ///< not one, nor the ranger's sign for no echo
   int infinite = 0;      ///< either infinity, where it is not the ranger's sign for no echo
   int zero = 0;          ///< either zero, where it is not the ranger's sign for no echo
-  int negative = 0;
+  int negative = 0;  ///< under zero, and not the ranger's sign for no echo
   int too_near = 0;      ///< positive, but nearer than the ranger can measure
   int too_far = 0;       ///< finite, but farther than it can measure
 

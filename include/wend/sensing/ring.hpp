@@ -51,7 +51,7 @@ struct Ring {
   Parameter min_range;  ///< metres, positive: what is nearer cannot be measured
   Parameter max_range;  ///< metres: what is farther is no echo; at most far_away
   Parameter noise;  ///< metres: standard deviation of one range
-  Mounting mounting{};
+  Mounting mounting{};  ///< where the ring sits; at the robot's origin unless given
 
   /// The reading this ranger gives when nothing came back, bit for bit: an infinity, 0, -1, 65.535 or a not-a-number.
   Parameter no_echo = std::numeric_limits<Parameter>::infinity();

@@ -19,7 +19,7 @@ template <PlainNumber S>
 struct Track {
   Disc<S> disc{};                   ///< in the frame of the poses
   Vec2<S> velocity{S(0.0F), S(0.0F)};  ///< metres a second over the ground, along the axes of that frame
-  Spread<S> spread{};
+  Spread<S> spread{};  ///< how sure position and velocity are
   std::uint8_t hits = 0;    ///< ticks on which it was seen, up to 255; 0: no track
   std::uint8_t misses = 0;  ///< ticks since it was seen
 };
@@ -36,7 +36,7 @@ template <int Tracks = 16>
 struct Tracker {
   static_assert(Tracks > 0, "wend: Tracker<Tracks> needs room for one track at least; write Tracker<16>");
 
-  ConstantVelocity motion{};
+  ConstantVelocity motion{};  ///< how a track is predicted, and weighed against what is seen
   Parameter gate = 16.0F;  ///< squared standard deviations: all but 3 in 10000 true pairs (chi-square, 2 dimensions)
   Parameter certain = 4.0F;  ///< squared standard deviations that a velocity must exceed to be told
   Parameter least_speed = 0.1F;  ///< metres a second that it must exceed as well
@@ -46,8 +46,10 @@ struct Tracker {
   int confirmed_after = 3;  ///< ticks on which a disc must have been seen before its velocity is told
   int dropped_after = 5;  ///< ticks without being seen after which it is forgotten, up to 250
 
+  /// What is known between ticks.
   template <PlainNumber S>
   struct Memory {
+    /// Those with no hits are free places.
     std::array<Track<S>, static_cast<std::size_t>(Tracks)> tracks{};
   };
 

@@ -65,24 +65,28 @@ template <typename Loop, Number S, typename Seen, typename Memory>
 }  // namespace detail
 
 /// How the bytes of a dump lie. Everything little-endian; a CRC-32 covers all bytes before it in its block.
-///   header: "wendlog" and the version (8) | parameters_checksum (4) | payload bytes a record (4) | number of the first
-///           record (4) | records (4) | bytes a number, kind of what is seen (1 + 1) | its size, discs kept (2 + 2) |
-///           bytes of the memory, of the command (2 + 2) | CRC-32 (4)
-///   record: its number (4) | 1, or 0 when it was overwritten meanwhile and the payload is zeros (1) | payload: packed
-///           situation, what was seen, memory before, command after | CRC-32 (4)
+/// - header: "wendlog" and the version (8) | parameters_checksum (4) | payload bytes a record (4) | number of the first
+///   record (4) | records (4) | bytes a number, kind of what is seen (1 + 1) | its size, discs kept (2 + 2) | bytes of
+///   the memory, of the command (2 + 2) | CRC-32 (4)
+/// - record: its number (4) | 1, or 0 when it was overwritten meanwhile and the payload is zeros (1) | payload: packed
+///   situation, what was seen, memory before, command after | CRC-32 (4)
 struct DumpLayout {
+  /// The first bytes of a dump.
   static constexpr std::array<char, 7> magic{'w', 'e', 'n', 'd', 'l', 'o', 'g'};
+  /// Of the layout: the byte after the magic.
   static constexpr std::uint8_t version = 1;
+  /// All of the header, its CRC-32 included.
   static constexpr std::size_t header_bytes = 38;
+  /// What a record takes beside its payload: number, flag and CRC-32.
   static constexpr std::size_t record_overhead = 9;
 };
 
-/// The last Capacity decisions of a loop, without a heap. `Seen` is what its tick is given: DiscSet<float, 8>,
-/// MovingDiscSet<float, 8>, or Readings<float, 16>. A record takes record_bytes of memory, and five more in a dump.
+/// The last Capacity decisions of a loop, without a heap. `Seen` is what its tick is given: `DiscSet<float, 8>`,
+/// `MovingDiscSet<float, 8>`, or `Readings<float, 16>`. A record takes record_bytes of memory, and five more in a dump.
 ///
-///   DecisionLog<decltype(loop), DiscSet<float, 8>, 64> log;                        // some 12 KiB
-///   Command<float> const command = log.tick(loop, now, discs, memory);             // instead of loop.tick(...)
-///   log.dump(loop, [](std::byte byte) { send(byte); });                            // when somebody asks
+///     DecisionLog<decltype(loop), DiscSet<float, 8>, 64> log;                        // some 12 KiB
+///     Command<float> const command = log.tick(loop, now, discs, memory);             // instead of loop.tick(...)
+///     log.dump(loop, [](std::byte byte) { send(byte); });                            // when somebody asks
 ///
 /// On one core, tick may run in an interrupt of dump, or dump in one of tick: a record that is not finished is not
 /// dumped, and one that is overwritten meanwhile is told as such. On two cores the caller has to lock.
@@ -91,17 +95,24 @@ class DecisionLog {
   static_assert(Capacity > 0, "wend: DecisionLog<Loop, Seen, Capacity> needs room for one decision at least");
 
  public:
+  /// The loop whose decisions are kept.
   using Loop = std::remove_cv_t<LoopType>;
+  /// What a tick is given: discs or readings.
   using Seen = SeenType;
+  /// The number that it computes in.
   using S = typename detail::SeenOf<Seen>::Scalar;
+  /// What the loop remembers between ticks.
   using Memory = memory_t<Loop, S>;
+  /// What a tick returns.
   using Command = decltype(detail::decide(std::declval<Loop const&>(), std::declval<Situation<S> const&>(),
                                           std::declval<Seen const&>(), std::declval<Memory&>()));
   static_assert(PlainNumber<S>, "wend: a log is of float or double");
 
+  /// Bytes of a record, without its number.
   static constexpr std::size_t payload_bytes = packed_size<Situation<S>> + packed_size<Seen> + packed_size<Memory> +
                                                packed_size<Command>;
   static constexpr std::size_t record_bytes = payload_bytes + 4;  ///< in memory, with its number
+  /// Bytes of a record in a dump.
   static constexpr std::size_t dumped_bytes = payload_bytes + DumpLayout::record_overhead;
 
   /// One control tick, and a record of it.
@@ -131,12 +142,13 @@ class DecisionLog {
 
   /// How many decisions are kept.
   [[nodiscard]] int size() const noexcept { return static_cast<int>(next_ - first_); }
+  /// How many decisions there is room for.
   [[nodiscard]] static constexpr int capacity() noexcept { return Capacity; }
   /// How many decisions there were, modulo 2^32.
   [[nodiscard]] std::uint32_t ticks() const noexcept { return next_; }
 
   /// Hands the header and the records, oldest first, to `sink`: sink(std::byte) for each byte, or
-  /// sink(std::span<std::byte const>) for each block. `loop` is the one that decided. Takes 2 record_bytes of stack.
+  /// `sink(std::span<std::byte const>)` for each block. `loop` is the one that decided. Takes 2 record_bytes of stack.
   template <typename Sink>
   void dump(Loop const& loop, Sink&& sink) const noexcept {
     std::uint32_t const first = first_;

@@ -21,11 +21,13 @@ namespace wend::inline v0 {
 /// in a row, and others but for one in 4e9; it is no seal against somebody who works it out anew.
 class Crc32 {
  public:
+  /// Takes one byte more.
   constexpr void operator()(std::byte byte) noexcept {
     state_ ^= std::to_integer<std::uint32_t>(byte);
     state_ = (state_ >> 4U) ^ table[state_ & 0xfU];  // half a byte a step: 64 bytes of table instead of 1 KiB
     state_ = (state_ >> 4U) ^ table[state_ & 0xfU];
   }
+  /// The checksum of all bytes so far; 0 of none.
   [[nodiscard]] constexpr std::uint32_t value() const noexcept { return ~state_; }
 
  private:

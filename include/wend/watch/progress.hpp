@@ -12,12 +12,14 @@ struct Progress {
   Parameter step = 0.10F;      ///< metres
   Parameter patience = 20.0F;  ///< seconds
 
+  /// The best so far. Starts with none.
   template <Number S>
   struct Memory {
     S nearest{S(far_away)};  ///< metres: least distance to the goal so far
     S since{S(0.0F)};        ///< seconds since that was bettered
   };
 
+  /// Whether the machine is stuck. Counts the tick.
   template <Number S, int N>
   [[nodiscard]] constexpr mask_t<S> operator()(Percept<S, N> const& percept, Memory<S>& memory) const noexcept {
     mask_t<S> const nearer = percept.goal_distance < memory.nearest - S(step);

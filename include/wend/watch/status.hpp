@@ -23,13 +23,13 @@ enum class Status : std::uint8_t {
 /// All findings of a tick, each a mask of the number's own kind: several can hold at once.
 template <Number S>
 struct Findings {
-  mask_t<S> stale{};
-  mask_t<S> blind{};
-  mask_t<S> arrived{};
-  mask_t<S> no_course{};
-  mask_t<S> blocked{};
-  mask_t<S> stuck{};
-  mask_t<S> discs_dropped{};
+  mask_t<S> stale{};  ///< the readings are too old, or the time step is not one
+  mask_t<S> blind{};  ///< too few beams alive, a disc that cannot be one, or a pose or goal that is not a number
+  mask_t<S> arrived{};  ///< within the arrival radius of the goal
+  mask_t<S> no_course{};  ///< the policy has no opinion
+  mask_t<S> blocked{};  ///< no room left to stop in: the machine may turn and must not drive
+  mask_t<S> stuck{};  ///< the goal has come no nearer for too long
+  mask_t<S> discs_dropped{};  ///< there were more discs than the set can hold
 };
 
 /// Whether wheels must stand still.
