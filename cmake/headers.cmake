@@ -1,5 +1,5 @@
 # Every header compiles alone: one source for each, with nothing in it but that header, twice. Those that run on a robot
-# compile as firmware does, without exceptions and RTTI.
+# compile as firmware does: no exceptions, no RTTI, and nothing of Eigen's that prints, allocates or needs alignment.
 
 file(GLOB_RECURSE wend_headers CONFIGURE_DEPENDS RELATIVE ${PROJECT_SOURCE_DIR}/include
      ${PROJECT_SOURCE_DIR}/include/wend/*.hpp)
@@ -26,3 +26,4 @@ foreach(side IN ITEMS robot lab)
   endif()
 endforeach()
 target_compile_options(headers_robot PRIVATE -fno-exceptions -fno-rtti)
+target_compile_definitions(headers_robot PRIVATE EIGEN_NO_IO EIGEN_NO_MALLOC EIGEN_DONT_VECTORIZE)

@@ -1,6 +1,6 @@
 #!/bin/sh
 # cmake/matrix.sh - the wider check. With no argument every step, else those named: g++, clang++-14, clang++,
-# clang++-19 (all tests with that compiler), sanitizers, threads, bare, tidy. Each builds in build/<step>/. What a
+# clang++-19 (all tests with that compiler), sanitizers, threads, lint, tidy. Each builds in build/<step>/. What a
 # machine has no tool for is skipped, and says so.
 set -eu
 case $0 in */*) cd "${0%/*}/.." ;; *) cd .. ;; esac
@@ -31,13 +31,20 @@ threads() {
   build/threads/tests/alone/alone_two_loops
 }
 
-# What runs on a robot, as firmware compiles it: no exceptions, no RTTI, nothing of Eigen's that prints or allocates.
-bare() {
-  setup_for=tests
-  . cmake/setup.sh
-  cmake -S . -B build/bare -DCMAKE_BUILD_TYPE=MinSizeRel -DWEND_TESTS=ON -DWEND_EXAMPLES=OFF -DWEND_BENCH=OFF \
-    -DCMAKE_CXX_FLAGS='-fno-exceptions -fno-rtti -DEIGEN_NO_IO -DEIGEN_NO_MALLOC -DEIGEN_DONT_VECTORIZE'
-  cmake --build build/bare --target headers_robot
+# What reads code without running it, over all headers: seconds. Suppressions have their reasons beside them.
+lint() {
+  if has cppcheck; then
+    find include/wend -name '*.hpp' | xargs cppcheck --enable=warning,performance,portability --std=c++20 --language=c++ \
+      --suppressions-list=cmake/cppcheck.suppress --quiet --error-exitcode=1 -Iinclude
+  fi
+  has clang-tidy && has clang++ || return 0
+  mkdir -p build/lint
+  for side in robot lab; do
+    find include/wend -name '*.hpp' | if [ $side = lab ]; then grep /lab/; else grep -v /lab/; fi | sort |
+      sed 's|^include/\(.*\)|#include "\1"|' >build/lint/$side.cpp
+    clang-tidy build/lint/$side.cpp --quiet --warnings-as-errors='*' --config-file=.clang-tidy -- -std=c++20 -Iinclude \
+      -isystem "${WEND_EIGEN:-/usr/include/eigen3}"
+  done
 }
 
 tidy() {
@@ -50,12 +57,12 @@ tidy() {
 if [ $# -eq 0 ]; then
   clang=clang++-14
   command -v $clang >/dev/null || clang=clang++
-  set -- g++ $clang clang++-19 sanitizers threads bare tidy
+  set -- g++ $clang clang++-19 sanitizers threads lint tidy
 fi
 for step in "$@"; do
   printf '\n=== %s ===\n' "$step"
   case $step in
-    sanitizers | threads | bare | tidy) $step ;;
+    sanitizers | threads | lint | tidy) $step ;;
     *++*) if has "$step"; then CXX=$step sh cmake/test.sh; fi ;;
     *)
       echo "no such step: $step" >&2

@@ -12,7 +12,7 @@
 #include <wend/lab/svg.hpp>
 
 #include "../policies.hpp"
-#include "../review/cellar.hpp"
+#include "../cellar.hpp"
 #include "../stand.hpp"
 #include "../table_options.hpp"
 #include "faults.hpp"

@@ -1,15 +1,15 @@
 // fleet: thousands of runs of one policy, in parts, on as many machines as there are; and the parts put together again.
 //
-//   fleet [--map STEMS.csv] [--runs N] [--seed N] [--threads N] [--out DIR]     all runs in one process
+//   fleet [--scene FILE | --map STEMS.csv] [--runs N] [--seed N] [--threads N] [--out DIR]     all runs in one process
 //   fleet --shard I/N [...]       part I of N, from 1: for any job array or queue; whole parts are not run again
 //   mpirun -n N fleet --mpi [...] the same, a part a rank
 //   fleet --merge FILES... [...]  puts parts together and says what became of the runs
 //   fleet --run K [...]           one run alone, with its trace
 //
-// A tray cart in the cellar of ../review, or in a stand of trees given as x, y, diameter. Options that say what is run
-// (--map, --runs, --seed) have to be the same for the parts and for the merge.
+// A tray cart in the cellar of ../cellar.hpp, or in a stand of trees given as x, y, diameter. Options that say what is
+// run
+// (--scene, --map, --runs, --seed) have to be the same for the parts and for the merge.
 #include <algorithm>
-#include <charconv>
 #include <cstdint>
 #include <cstdio>
 #include <cstdlib>
@@ -32,9 +32,9 @@
 #include <wend/lab/tally.hpp>
 #include <wend/lab/trace.hpp>
 
+#include "../given.hpp"
 #include "../policies.hpp"
-#include "../review/cellar.hpp"
-#include "../stand.hpp"
+#include "../whole_number.hpp"
 #include "ranks.hpp"
 
 namespace {
@@ -42,8 +42,9 @@ namespace {
 using namespace wend;
 
 constexpr char const* usage =
-    "usage: fleet [--map STEMS.csv] [--runs N] [--seed N] [--threads N] [--out DIR]\n"
+    "usage: fleet [--scene FILE | --map STEMS.csv] [--runs N] [--seed N] [--threads N] [--out DIR]\n"
     "             [--shard I/N | --mpi | --merge FILES... | --run K]\n"
+    "  --scene FILE     a scene of your own (its words are in lab/scene_file.hpp)\n"
     "  --map STEMS.csv  a stand of trees, columns x,y,diameter in metres (default: the cellar)\n"
     "  --runs N         runs in all (default: 10000)\n"
     "  --seed N         chooses starts, goals and noise (default: 1)\n"
@@ -58,6 +59,7 @@ enum class Task { all, shard, mpi, merge, run };
 
 struct Wanted {
   Task task = Task::all;
+  std::string scene;
   std::string map;
   std::uint64_t runs = 10000;
   std::uint64_t seed = 1;
@@ -68,52 +70,8 @@ struct Wanted {
   std::vector<std::string> files;
 };
 
-constexpr Loop<decltype(policies::composed)> loop{.policy = policies::composed};
-
-lab::Vehicle cart() {
-  lab::Vehicle cart = cellar::cart();
-  cart.disc_noise = 0.01;
-  cart.radius_noise = 0.01;
-  cart.disc_dropout = 0.01;
-  cart.slip = 0.03;
-  cart.wheel_spread = 0.01;
-  cart.track_spread = 0.01;
-  return cart;
-}
-
-lab::Scenes scenes(std::string const& map) {
-  lab::Scenes scenes;
-  lab::TripBounds bounds{cellar::region, 0.4, 6.0, 180.0};
-  if (map.empty()) {
-    scenes.worlds = {cellar::world()};
-  } else {
-    stand::Stand const trees = stand::read(map);
-    Vec2<double> low = trees.trip.start.position;
-    Vec2<double> high = low;
-    for (lab::WorldDisc const& d : trees.world.discs) {
-      low = low.cwiseMin(d.disc.centre);
-      high = high.cwiseMax(d.disc.centre);
-    }
-    double const width = high.x() - low.x();
-    bounds = {{low, high}, 0.4, 0.5 * width, 60.0 + 8.0 * width};
-    scenes.worlds = {trees.world};
-  }
-  scenes.trip = [bounds](lab::Ground const& ground, lab::Draws const& draws) {
-    return lab::drawn_trip(ground, bounds, draws);
-  };
-  return scenes;
-}
-
-// A whole number from `least`; says what is wrong, and exits, if it is none.
-std::uint64_t whole_number(char const* option, std::string_view text, std::uint64_t least) {
-  std::uint64_t value = 0;
-  auto const parsed = std::from_chars(text.data(), text.data() + text.size(), value);
-  if (parsed.ec != std::errc{} || parsed.ptr != text.data() + text.size() || value < least) {
-    std::fprintf(stderr, "fleet: %s expects a whole number from %llu, found '%.*s'\n", option,
-                 static_cast<unsigned long long>(least), static_cast<int>(text.size()), text.data());
-    std::exit(2);
-  }
-  return value;
+auto loop_in(lab::SceneFile const& scene) {
+  return lab::fitted(Loop<decltype(policies::composed)>{.policy = policies::composed}, scene.vehicle);
 }
 
 lab::Shard shard_of(std::string_view text) {
@@ -123,8 +81,8 @@ lab::Shard shard_of(std::string_view text) {
                  text.data());
     std::exit(2);
   }
-  lab::Shard const shard{whole_number("--shard", text.substr(0, slash), 1),
-                         whole_number("--shard", text.substr(slash + 1), 1)};
+  lab::Shard const shard{whole_number("fleet", "--shard", text.substr(0, slash), 1),
+                         whole_number("fleet", "--shard", text.substr(slash + 1), 1)};
   if (shard.number > shard.of) {
     std::fprintf(stderr, "fleet: --shard expects a part from 1 to %llu\n", static_cast<unsigned long long>(shard.of));
     std::exit(2);
@@ -177,8 +135,9 @@ std::string file_of(Wanted const& wanted, lab::Shard const& shard) {
       .string();
 }
 
-lab::CampaignIdentity identity_of(Wanted const& wanted, lab::Scenes const& where) {
-  return {lab::campaign_fingerprint(loop, cart(), where, wanted.runs, wanted.seed), wanted.seed, wanted.runs};
+lab::CampaignIdentity identity_of(Wanted const& wanted, lab::SceneFile const& scene) {
+  return {lab::campaign_fingerprint(loop_in(scene), scene.vehicle, scene.scenes(), wanted.runs, wanted.seed),
+          wanted.seed, wanted.runs};
 }
 
 // Whether a shard's file is there and whole, and of this campaign.
@@ -195,8 +154,8 @@ bool is_there(std::string const& file, lab::CampaignIdentity const& identity, la
 }
 
 int drive(Wanted const& wanted, lab::Shard const& shard) {
-  lab::Scenes const where = scenes(wanted.map);
-  lab::CampaignIdentity const identity = identity_of(wanted, where);
+  lab::SceneFile const scene = given::scene(wanted.scene, wanted.map);
+  lab::CampaignIdentity const identity = identity_of(wanted, scene);
   std::string const file = file_of(wanted, shard);
   if (wanted.task != Task::all && is_there(file, identity, shard)) {
     std::printf("%s is there and whole\n", file.c_str());
@@ -209,7 +168,8 @@ int drive(Wanted const& wanted, lab::Shard const& shard) {
   options.threads = static_cast<int>(wanted.threads);
   options.stop = &lab::stop_on_interrupt();
   options.progress = std::ref(bar);
-  lab::Campaign campaign = lab::campaign(loop, cart(), where, shard.size(wanted.runs), wanted.seed, options);
+  lab::Campaign campaign =
+      lab::campaign(loop_in(scene), scene.vehicle, scene.scenes(), shard.size(wanted.runs), wanted.seed, options);
   bar.clear();
   lab::RowFile const rows{identity, shard, campaign.complete, std::move(campaign.rows)};
   if (!rows.complete && is_there(file, identity, shard)) {
@@ -230,7 +190,7 @@ int drive(Wanted const& wanted, lab::Shard const& shard) {
 }
 
 int merge(Wanted const& wanted) {
-  lab::Merged const merged = lab::merge(wanted.files, identity_of(wanted, scenes(wanted.map)));
+  lab::Merged const merged = lab::merge(wanted.files, identity_of(wanted, given::scene(wanted.scene, wanted.map)));
   for (std::string const& problem : merged.problems) {
     std::fprintf(stderr, "fleet: %s\n", problem.c_str());
   }
@@ -250,7 +210,8 @@ int merge(Wanted const& wanted) {
 }
 
 int run_alone(Wanted const& wanted) {
-  lab::Replay const replay = lab::replay_run(loop, cart(), scenes(wanted.map), wanted.run, wanted.seed);
+  lab::SceneFile const scene = given::scene(wanted.scene, wanted.map);
+  lab::Replay const replay = lab::replay_run(loop_in(scene), scene.vehicle, scene.scenes(), wanted.run, wanted.seed);
   std::filesystem::create_directories(wanted.out);
   std::string const file =
       (std::filesystem::path(wanted.out) / ("run-" + std::to_string(wanted.run) + ".csv")).string();
@@ -284,24 +245,20 @@ int do_task(Wanted const& wanted, int& argc, char**& argv) {
 int main(int argc, char** argv) {
   Wanted wanted;
   bool threads_given = false;
-  option const options[] = {{"map", required_argument, nullptr, 'm'},
-                            {"runs", required_argument, nullptr, 'n'},
-                            {"seed", required_argument, nullptr, 's'},
-                            {"threads", required_argument, nullptr, 't'},
-                            {"out", required_argument, nullptr, 'o'},
-                            {"shard", required_argument, nullptr, 'i'},
-                            {"mpi", no_argument, nullptr, 'p'},
-                            {"merge", no_argument, nullptr, 'g'},
-                            {"run", required_argument, nullptr, 'k'},
-                            {"help", no_argument, nullptr, 'h'},
-                            {nullptr, 0, nullptr, 0}};
-  for (int given = 0; (given = getopt_long(argc, argv, "", options, nullptr)) != -1;) {
-    switch (given) {
+  option const options[] = {{"scene", required_argument, nullptr, 'c'},   {"map", required_argument, nullptr, 'm'},
+                            {"runs", required_argument, nullptr, 'n'},    {"seed", required_argument, nullptr, 's'},
+                            {"threads", required_argument, nullptr, 't'}, {"out", required_argument, nullptr, 'o'},
+                            {"shard", required_argument, nullptr, 'i'},   {"mpi", no_argument, nullptr, 'p'},
+                            {"merge", no_argument, nullptr, 'g'},         {"run", required_argument, nullptr, 'k'},
+                            {"help", no_argument, nullptr, 'h'},          {nullptr, 0, nullptr, 0}};
+  for (int letter = 0; (letter = getopt_long(argc, argv, "", options, nullptr)) != -1;) {
+    switch (letter) {
+      case 'c': wanted.scene = optarg; break;
       case 'm': wanted.map = optarg; break;
-      case 'n': wanted.runs = whole_number("--runs", optarg, 1); break;
-      case 's': wanted.seed = whole_number("--seed", optarg, 0); break;
+      case 'n': wanted.runs = whole_number("fleet", "--runs", optarg, 1); break;
+      case 's': wanted.seed = whole_number("fleet", "--seed", optarg, 0); break;
       case 't':
-        wanted.threads = std::min<std::uint64_t>(whole_number("--threads", optarg, 1), 1024);
+        wanted.threads = std::min<std::uint64_t>(whole_number("fleet", "--threads", optarg, 1), 1024);
         threads_given = true;
         break;
       case 'o': wanted.out = optarg; break;
@@ -313,7 +270,7 @@ int main(int argc, char** argv) {
       case 'g': wanted.task = Task::merge; break;
       case 'k':
         wanted.task = Task::run;
-        wanted.run = whole_number("--run", optarg, 0);
+        wanted.run = whole_number("fleet", "--run", optarg, 0);
         break;
       case 'h': std::fputs(usage, stdout); return 0;
       default: std::fputs(usage, stderr); return 2;

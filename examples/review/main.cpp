@@ -1,195 +1,189 @@
-// review: drives four policies through one world on the same noise, and prints what became of each; and where the world
-// is small enough, what is proved about each for all states.
+// review: the paper for the meeting before a machine drives. Four policies in one scene: does it arrive, how near does
+// it come, does it dither, how sure are we?
 //
-//   review [--out DIR] [--map STEMS.csv] [--seed N] [--runs-only]
+//   review [--scene FILE | --map STEMS.csv] [--seed N] [--runs N] [--threads N] [--runs-only] [--json] [--out DIR]
+//   review --tune [...]
 //
-// Without a map: the cellar of cellar.hpp. With one: a stand of trees given as x, y, diameter in metres, crossed from
-// west to east. Writes DIR/<policy>.csv and .svg for each policy, and DIR/all.svg.
+// Without a scene: the cellar of cellar.hpp. --map: a stand of trees given as x, y, diameter in metres, crossed from
+// west to east. Writes DIR/review.html, the page; review.json; runs.csv, a row for each drawn run; <policy>.csv and
+// .svg, the scene's own trip; and all.svg.
 #include <algorithm>
-#include <charconv>
 #include <cstdint>
 #include <cstdio>
-#include <cstring>
 #include <exception>
 #include <filesystem>
-#include <optional>
 #include <string>
+#include <string_view>
 #include <system_error>
 #include <thread>
 #include <vector>
 
 #include <getopt.h>
 
-#include <wend/lab/arrival_map.hpp>
 #include <wend/lab/arrival_picture.hpp>
 #include <wend/lab/picture.hpp>
-#include <wend/lab/prove.hpp>
-#include <wend/lab/simulate.hpp>
+#include <wend/lab/progress_bar.hpp>
+#include <wend/lab/review.hpp>
+#include <wend/lab/review_json.hpp>
+#include <wend/lab/review_page.hpp>
+#include <wend/lab/row_table.hpp>
 #include <wend/lab/trace.hpp>
 
+#include "../given.hpp"
 #include "../policies.hpp"
-#include "../stand.hpp"
-#include "cellar.hpp"
+#include "../whole_number.hpp"
+#include "print.hpp"
+#include "tuning.hpp"
 
 namespace {
 
 using namespace wend;
 
 constexpr char const* usage =
-    "usage: review [--out DIR] [--map STEMS.csv] [--seed N] [--runs-only]\n"
-    "  --out DIR        where pictures and tables go (default: review-out)\n"
+    "usage: review [--scene FILE | --map STEMS.csv] [--seed N] [--runs N] [--threads N] [--runs-only] [--json] [--out "
+    "DIR]\n"
+    "       review --tune [--scene FILE | --map STEMS.csv] [--seed N] [--runs N] [--threads N]\n"
+    "  --scene FILE     a scene of your own (its words are in lab/scene_file.hpp)\n"
     "  --map STEMS.csv  a stand of trees, columns x,y,diameter in metres (default: the cellar)\n"
-    "  --seed N         chooses the noise (default: 1)\n"
-    "  --runs-only      leaves out what takes seconds: the statements about all states\n";
+    "  --seed N         chooses starts, goals and noise (default: 1)\n"
+    "  --runs N         drawn runs of each policy (default: 5000), of each candidate of a tuning (400)\n"
+    "  --threads N      default: as many as there are cores; changes nothing but the time\n"
+    "  --runs-only      leaves out what takes seconds: the statements about all states\n"
+    "  --tune           searches thresholds of the composed policy: quickest, as long as it arrives and keeps clear\n"
+    "  --json           prints JSON instead of tables\n"
+    "  --out DIR        where page, pictures and tables go (default: review-out)\n";
 
-struct Scene {
-  std::string title;
-  lab::World world;
-  lab::Trip trip;
-  lab::Region region{};
+struct Wanted {
+  std::string scene;
+  std::string map;
+  std::string out = "review-out";
+  std::uint64_t seed = 1;
+  std::uint64_t runs = 0;  // as many as usual
+  std::uint64_t threads = std::max(1U, std::thread::hardware_concurrency());
+  bool runs_only = false;
+  bool json = false;
+  bool tune = false;
 };
 
-Scene crossing(std::string const& file) {
-  stand::Stand const trees = stand::read(file);
-  return {"A cart crosses a stand of " + std::to_string(trees.world.discs.size()) + " trees", trees.world, trees.trip};
+// The command line again, but for what changes only where results go.
+std::string same_command(char const* program, Wanted const& wanted) {
+  std::string line = program;
+  if (!wanted.scene.empty()) {
+    line += " --scene " + wanted.scene;
+  } else if (!wanted.map.empty()) {
+    line += " --map " + wanted.map;
+  }
+  return line + " --seed " + std::to_string(wanted.seed) + " --runs " + std::to_string(wanted.runs);
 }
 
-/// What is known about one policy: a run, and where the scene is small enough, what holds for all states.
-struct Reviewed {
-  lab::DrawnRun drawn;
-  std::optional<lab::ArrivalMap> arrivals;
-  lab::Verdict verdict = lab::Verdict::undecided;
-  long long boxes = 0;
-};
-
-constexpr int most_discs = 15;  // that are few enough for a proof in seconds
-constexpr double kept_clear = 0.01;  // metres: the claim
-constexpr double seen_within = 0.02;  // metres: a disc's edge may be seen so far off
-constexpr double cell = 0.04;  // metres
-
-template <typename Policy>
-Reviewed look_at(char const* name, Policy const& policy, Scene const& scene, std::uint64_t seed, bool runs_only) {
-  Loop<Policy, Ring<180>> const driven{.policy = policy, .sensing = cellar::ring};
-  lab::Vehicle const cart = cellar::cart();
-  Reviewed result{{name, lab::simulate(driven, cart, scene.world, scene.trip, seed, 0, true)}, {}};
-  if (runs_only || scene.world.discs.size() > most_discs) {
-    return result;
-  }
-  int const threads = std::max(1, static_cast<int>(std::thread::hardware_concurrency()));
-  Loop<Policy> const loop{.policy = policy};
-  lab::ProofOptions proof_options;
-  proof_options.threads = threads;
-  proof_options.error.radius = seen_within;
-  auto const proof = lab::prove<most_discs>(loop, {cart.period * (1.0 + cart.jitter), cart.latency}, scene.world,
-                                            scene.trip.goal, scene.region, {kept_clear}, proof_options);
-  result.verdict = proof.verdict;
-  result.boxes = proof.boxes;
-  lab::ArrivalOptions arrival_options;
-  arrival_options.finest = cell;
-  arrival_options.threads = threads;
-  result.arrivals = lab::arrival_map<most_discs>(policy, scene.world, scene.trip.goal, scene.region, arrival_options);
-  return result;
-}
-
-void print_run(lab::DrawnRun const& drawn) {
-  lab::Run const& run = drawn.run;
-  std::string ending = text(run.ending);
-  if (run.ending == lab::Ending::time_out) {
-    ending = ending + ": " + text(run.last_status);
-  }
-  double const a_minute = 60.0 * run.switches / std::max(run.time, 1e-9);
-  std::string const dwell = run.switches < 2 ? "-" : lab::detail::fixed(run.least_dwell, 2);
-  std::printf("%-16s %-20s %7.1f %7.2f %10.0f %12.1f %12s\n", drawn.name.c_str(), ending.c_str(), run.time,
-              run.path_length / run.straight_length, 100.0 * run.least_clearance, a_minute, dwell.c_str());
-}
-
-void print_statements(std::vector<Reviewed> const& all) {
-  std::printf("\nOver all states, by intervals:\n\n%-16s %-20s %12s %28s\n", "policy", "keeps 1 cm clear", "boxes",
-              "arrival proved from, % area");
-  for (Reviewed const& one : all) {
-    std::printf("%-16s %-20s %12lld %28.1f\n", one.drawn.name.c_str(), text(one.verdict), one.boxes,
-                100.0 * one.arrivals->share(lab::Arrival::proved));
-  }
-  std::printf(
-      "\nKeeps clear: the loop, from any position and heading that is clear, with any memory, discs seen within 2 cm,\n"
-      "period and latency as the cart's, rounding included. Arrival: the policy on a point machine that follows its\n"
-      "course at once, exact discs, any memory, cells of 4 cm. What is not proved is undecided, not false.\n");
-}
-
-int review(std::string const& out, std::string const& map, std::uint64_t seed, bool runs_only) {
-  Scene const scene =
-      map.empty() ? Scene{"A tray cart crosses the mushroom cellar", cellar::world(), cellar::trip(), cellar::region}
-                  : crossing(map);
-  std::error_code why;  // before the work, so that it is not for nothing
-  std::filesystem::create_directories(out, why);
-  if (why || !std::filesystem::is_directory(out)) {
-    throw lab::FileError(out, "expected a folder, or a place where one can be made" +
-                                  (why ? " (" + why.message() + ")" : std::string()));
-  }
-  std::vector<Reviewed> const all{look_at("hard switch", policies::hard_switch, scene, seed, runs_only),
-                                  look_at("two thresholds", policies::two_thresholds, scene, seed, runs_only),
-                                  look_at("blend", policies::blended, scene, seed, runs_only),
-                                  look_at("composed", policies::composed, scene, seed, runs_only)};
-  std::printf("%s: %zu discs, %.1f m as the crow flies, seed %llu\n\n", scene.title.c_str(), scene.world.discs.size(),
-              all.front().drawn.run.straight_length, static_cast<unsigned long long>(seed));
-  std::printf("%-16s %-20s %7s %7s %10s %12s %12s\n", "policy", "ending", "time", "path", "clearance", "switches",
-              "dwell");
-  std::printf("%-16s %-20s %7s %7s %10s %12s %12s\n", "", "", "s", "ratio", "least, cm", "a minute", "least, s");
-  std::vector<lab::DrawnRun> runs;
-  for (Reviewed const& one : all) {
-    print_run(one.drawn);
-    runs.push_back(one.drawn);
-  }
-  if (all.front().arrivals) {
-    print_statements(all);
-  }
-
-  auto const place = [&out](std::string name, char const* ending) {
-    std::replace(name.begin(), name.end(), ' ', '-');
-    return (std::filesystem::path(out) / (name + ending)).string();
+// All four policies, one after another, until there is no more or somebody wants an end.
+lab::Review look_at(lab::SceneFile const& scene, Wanted const& wanted) {
+  lab::Review review{scene.title, scene.world, scene.trip, scene.region, wanted.seed, wanted.runs, true, {}};
+  lab::ProgressBar bar("review");
+  lab::ReviewOptions options;
+  options.seed = wanted.seed;
+  options.runs = wanted.runs;
+  options.threads = static_cast<int>(wanted.threads);
+  options.all_states = !wanted.runs_only;
+  options.stop = &lab::stop_on_interrupt();
+  lab::Scenes const drawn = scene.scenes();
+  options.progress = [&](double share) {
+    bar(static_cast<std::uint64_t>(1000.0 * (static_cast<double>(review.policies.size()) + share)), 4000);
   };
-  lab::write_whole(place("all", ".svg"), lab::picture(scene.title, scene.world, scene.trip, runs));
-  for (Reviewed const& one : all) {
-    std::string const title = scene.title + ": " + one.drawn.name;
-    lab::write_whole(place(one.drawn.name, ".svg"),
-                     one.arrivals
-                         ? lab::arrival_picture(title, *one.arrivals, scene.world, scene.trip.goal, {one.drawn})
-                         : lab::picture(title, scene.world, scene.trip, {one.drawn}));
-    lab::write_whole(place(one.drawn.name, ".csv"), lab::trace(one.drawn.run));
+  auto const look = [&](char const* name, auto const& policy) {
+    if (options.stop->load()) {
+      review.complete = false;
+      return;
+    }
+    lab::add_review(review, name, policy, cellar::ring, scene.vehicle, drawn, scene.claims, options);
+  };
+  look("hard switch", policies::hard_switch);
+  look("two thresholds", policies::two_thresholds);
+  look("blend", policies::blended);
+  look("composed", policies::composed);
+  return review;
+}
+
+void write_all(lab::Review const& review, lab::SceneFile const& scene, Wanted const& wanted) {
+  auto const place = [&wanted](std::string name, char const* ending) {
+    std::replace(name.begin(), name.end(), ' ', '-');
+    return (std::filesystem::path(wanted.out) / (name + ending)).string();
+  };
+  std::vector<std::string> const again{same_command("build/examples/review", wanted),
+                                       "# one drawn run of the composed policy alone, with its trace:",
+                                       same_command("build/examples/fleet", wanted) + " --run NUMBER"};
+  lab::write_whole(place("review", ".html"), lab::review_page(review, again, scene.vehicle.radius));
+  lab::write_whole(place("review", ".json"), lab::review_json(review) + "\n");
+  std::string rows = lab::row_table_names;
+  std::vector<lab::DrawnRun> runs;
+  for (lab::PolicyReview const& policy : review.policies) {
+    rows += lab::row_table(policy.name, policy.rows);
+    lab::DrawnRun const drawn{policy.name, policy.run};
+    std::string const title = review.title + ": " + policy.name;
+    lab::write_whole(place(policy.name, ".svg"),
+                     policy.arrivals
+                         ? lab::arrival_picture(title, *policy.arrivals, review.world, review.trip.goal, {drawn})
+                         : lab::picture(title, review.world, review.trip, {drawn}));
+    lab::write_whole(place(policy.name, ".csv"), lab::trace(policy.run));
+    runs.push_back(drawn);
   }
-  std::printf(
-      "\nPictures and tables are in %s/.\n"
-      "Runs are simulations: evidence, not proof; proofs hold for what they assume; neither is a safety function.\n"
-      "A machine that can hurt someone needs protective devices and people qualified for them; local codes come\n"
-      "first.\n",
-      out.c_str());
+  lab::write_whole(place("runs", ".csv"), rows);
+  lab::write_whole(place("all", ".svg"), lab::picture(review.title, review.world, review.trip, runs));
+}
+
+int make_review(Wanted const& wanted) {
+  lab::SceneFile const scene = given::scene(wanted.scene, wanted.map);
+  if (wanted.tune) {
+    return review::tune(scene, {wanted.runs, wanted.seed, static_cast<int>(wanted.threads)});
+  }
+  std::error_code why;  // before the work, so that it is not for nothing
+  std::filesystem::create_directories(wanted.out, why);
+  if (why || !std::filesystem::is_directory(wanted.out)) {
+    throw lab::FileError(wanted.out, "expected a folder, or a place where one can be made" +
+                                         (why ? " (" + why.message() + ")" : std::string()));
+  }
+  lab::Review const review = look_at(scene, wanted);
+  write_all(review, scene, wanted);
+  if (wanted.json) {
+    std::printf("%s\n", lab::review_json(review).c_str());
+  } else {
+    review::print(review);
+    std::printf("\nThe page is %s/review.html; pictures and tables are beside it.\n%s", wanted.out.c_str(),
+                review::cautions);
+  }
+  if (!review.complete) {
+    std::fprintf(stderr, "review: interrupted: the page tells of what was done so far\n");
+    return 130;
+  }
   return 0;
 }
 
 }  // namespace
 
 int main(int argc, char** argv) {
-  std::string out = "review-out";
-  std::string map;
-  std::uint64_t seed = 1;
-  bool runs_only = false;
-  option const options[] = {{"out", required_argument, nullptr, 'o'},  {"map", required_argument, nullptr, 'm'},
-                            {"seed", required_argument, nullptr, 's'}, {"runs-only", no_argument, nullptr, 'r'},
-                            {"help", no_argument, nullptr, 'h'},       {nullptr, 0, nullptr, 0}};
-  for (int given = 0; (given = getopt_long(argc, argv, "", options, nullptr)) != -1;) {
-    switch (given) {
-      case 'o': out = optarg; break;
-      case 'm': map = optarg; break;
-      case 'r': runs_only = true; break;
-      case 's': {
-        char const* const end = optarg + std::strlen(optarg);
-        auto const parsed = std::from_chars(optarg, end, seed);
-        if (parsed.ec != std::errc{} || parsed.ptr != end) {
-          std::fprintf(stderr, "review: --seed expects a whole number from 0, found '%s'\n", optarg);
-          return 2;
-        }
-        break;
-      }
+  Wanted wanted;
+  option const options[] = {{"scene", required_argument, nullptr, 'c'},
+                            {"map", required_argument, nullptr, 'm'},
+                            {"seed", required_argument, nullptr, 's'},
+                            {"runs", required_argument, nullptr, 'n'},
+                            {"threads", required_argument, nullptr, 't'},
+                            {"runs-only", no_argument, nullptr, 'r'},
+                            {"tune", no_argument, nullptr, 'u'},
+                            {"json", no_argument, nullptr, 'j'},
+                            {"out", required_argument, nullptr, 'o'},
+                            {"help", no_argument, nullptr, 'h'},
+                            {nullptr, 0, nullptr, 0}};
+  for (int letter = 0; (letter = getopt_long(argc, argv, "", options, nullptr)) != -1;) {
+    switch (letter) {
+      case 'c': wanted.scene = optarg; break;
+      case 'm': wanted.map = optarg; break;
+      case 's': wanted.seed = whole_number("review", "--seed", optarg, 0); break;
+      case 'n': wanted.runs = whole_number("review", "--runs", optarg, 1); break;
+      case 't': wanted.threads = whole_number("review", "--threads", optarg, 1, 1024); break;
+      case 'r': wanted.runs_only = true; break;
+      case 'j': wanted.json = true; break;
+      case 'u': wanted.tune = true; break;
+      case 'o': wanted.out = optarg; break;
       case 'h': std::fputs(usage, stdout); return 0;
       default: std::fputs(usage, stderr); return 2;
     }
@@ -198,8 +192,16 @@ int main(int argc, char** argv) {
     std::fprintf(stderr, "review: did not expect '%s'\n%s", argv[optind], usage);
     return 2;
   }
+  if (wanted.runs == 0) {
+    wanted.runs = wanted.tune ? 400 : 5000;
+  }
   try {
-    return review(out, map, seed, runs_only);
+    int const result = make_review(wanted);
+    if (std::fflush(stdout) != 0) {
+      std::fprintf(stderr, "review: could not write to the output\n");
+      return 2;
+    }
+    return result;
   } catch (std::exception const& error) {
     std::fprintf(stderr, "review: %s\n", error.what());
     return 2;

@@ -7,7 +7,7 @@
 #include <wend/wend.hpp>
 
 #include "../policies.hpp"
-#include "../review/cellar.hpp"
+#include "../cellar.hpp"
 
 using namespace wend;
 

@@ -16,7 +16,7 @@
 #include <doctest/doctest.h>
 
 #include "../../examples/policies.hpp"
-#include "../../examples/review/cellar.hpp"
+#include "../../examples/cellar.hpp"
 #include "wend/lab/campaign.hpp"
 #include "wend/lab/csv.hpp"
 #include "wend/lab/tally.hpp"

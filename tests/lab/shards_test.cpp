@@ -16,7 +16,7 @@
 #include <unistd.h>
 
 #include "../../examples/policies.hpp"
-#include "../../examples/review/cellar.hpp"
+#include "../../examples/cellar.hpp"
 #include "wend/lab/shards.hpp"
 
 namespace {

@@ -15,7 +15,7 @@
 #include "wend/lab/simulate.hpp"
 
 #include "../../examples/policies.hpp"
-#include "../../examples/review/cellar.hpp"
+#include "../../examples/cellar.hpp"
 
 namespace {
 

@@ -3,7 +3,7 @@
 #include <wend/wend.hpp>
 
 #include "examples/policies.hpp"
-#include "examples/review/cellar.hpp"
+#include "examples/cellar.hpp"
 
 void proves();
 
