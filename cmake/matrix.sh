@@ -1,6 +1,6 @@
 #!/bin/sh
 # cmake/matrix.sh - the wider check. With no argument every step, else those named: g++, clang++-14, clang++,
-# clang++-19 (all tests with that compiler), sanitizers, threads, lint, tidy. Each builds in build/<step>/. What a
+# clang++-19 (all tests with that compiler), sanitizers, headers, threads, lint, tidy. Each builds in build/<step>/. What a
 # machine has no tool for is skipped, and says so.
 set -eu
 case $0 in */*) cd "${0%/*}/.." ;; *) cd .. ;; esac
@@ -17,8 +17,16 @@ has() {
 # do not stop it: g++ sees ghosts in code that it has instrumented. Only tests that run instrumented code.
 sanitizers() {
   WEND_CTEST='-E consumer_|must_not|layers' WEND_BUILD=build/sanitizers sh cmake/test.sh -DCMAKE_BUILD_TYPE=Debug -DCMAKE_CXX_FLAGS_DEBUG=-g1 \
-    -DWEND_WERROR=OFF -DWEND_BENCH=OFF -DWEND_EXAMPLES=OFF -DWEND_HEADERS_ALONE=OFF \
+    -DWEND_WERROR=OFF -DWEND_BENCH=OFF -DWEND_EXAMPLES=OFF \
     -DCMAKE_CXX_FLAGS='-O1 -fsanitize=address,undefined -fno-sanitize-recover=all -fno-omit-frame-pointer'
+}
+
+# Every header alone; those of the robot side as firmware compiles them (cmake/headers.cmake).
+headers() {
+  setup_for=tests
+  . cmake/setup.sh
+  cmake -S . -B build/headers -DWEND_TESTS=ON -DWEND_EXAMPLES=OFF -DWEND_BENCH=OFF -DCMAKE_CXX_FLAGS_RELEASE=-O1
+  cmake --build build/headers --target headers
 }
 
 # Two loops in two threads, under the thread sanitizer.
@@ -57,12 +65,12 @@ tidy() {
 if [ $# -eq 0 ]; then
   clang=clang++-14
   command -v $clang >/dev/null || clang=clang++
-  set -- g++ $clang clang++-19 sanitizers threads lint tidy
+  set -- g++ $clang clang++-19 sanitizers headers threads lint tidy
 fi
 for step in "$@"; do
   printf '\n=== %s ===\n' "$step"
   case $step in
-    sanitizers | threads | lint | tidy) $step ;;
+    sanitizers | headers | threads | lint | tidy) $step ;;
     *++*) if has "$step"; then CXX=$step sh cmake/test.sh; fi ;;
     *)
       echo "no such step: $step" >&2

@@ -43,9 +43,10 @@ void print_counts(lab::Review const& review) {
     lab::Tally const& t = policy.tally;
     if (t.runs > 0) {
       double const low = 1.0 - lab::upper_bound_on_probability(t.runs - t.arrived, t.runs);
-      std::printf("%-16s %20s %19.2f %9llu %8.1f %13.1f\n", policy.name.c_str(),
+      std::string const median = t.arrived > 0 ? lab::detail::fixed(t.time.median) : "-";
+      std::printf("%-16s %20s %19.2f %9llu %8s %13.1f\n", policy.name.c_str(),
                   lab::detail::of_runs(t.arrived, t.runs).c_str(), std::floor(1e4 * low) / 100.0,
-                  static_cast<unsigned long long>(t.contacts), t.time.median, 100.0 * t.clearance.low);
+                  static_cast<unsigned long long>(t.contacts), median.c_str(), 100.0 * t.clearance.low);
     }
   }
 }
