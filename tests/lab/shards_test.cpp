@@ -28,7 +28,8 @@ struct Folder {
   std::filesystem::path path;
 
   Folder() {
-    std::string name = (std::filesystem::temp_directory_path() / "wend-shards-XXXXXX").string();
+    // mkdtemp (POSIX.1-2008) puts its own characters in place of six of these at the end.
+    std::string name = (std::filesystem::temp_directory_path() / "wend-shards-").string() + std::string(6, 'X');
     REQUIRE(::mkdtemp(name.data()) != nullptr);
     path = name;
   }
