@@ -2,18 +2,17 @@
 #pragma once
 
 #include <algorithm>
-#include <charconv>
 #include <cstddef>
 #include <cstdio>
 #include <cstdlib>
-#include <cstring>
 #include <exception>
 #include <string>
-#include <system_error>
 #include <thread>
 #include <vector>
 
 #include <getopt.h>
+
+#include "whole_number.hpp"
 
 namespace table {
 
@@ -36,15 +35,7 @@ inline Options read_options(char const* program, char const* usage, int argc, ch
     switch (given) {
       case 'm': options.map = optarg; break;
       case 'd': options.markdown = true; break;
-      case 'n': {
-        char const* const end = optarg + std::strlen(optarg);
-        auto const parsed = std::from_chars(optarg, end, options.runs);
-        if (parsed.ec != std::errc{} || parsed.ptr != end || options.runs < 1 || options.runs > 10000) {
-          std::fprintf(stderr, "%s: --runs expects a whole number from 1 to 10000, found '%s'\n", program, optarg);
-          std::exit(2);
-        }
-        break;
-      }
+      case 'n': options.runs = static_cast<int>(whole_number(program, "--runs", optarg, 1, 10000)); break;
       case 'h': std::fputs(usage, stdout); std::exit(0);
       default: std::fputs(usage, stderr); std::exit(2);
     }

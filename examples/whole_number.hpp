@@ -14,8 +14,12 @@ inline std::uint64_t whole_number(char const* program, char const* option, std::
   std::uint64_t value = 0;
   auto const parsed = std::from_chars(text.data(), text.data() + text.size(), value);
   if (parsed.ec != std::errc{} || parsed.ptr != text.data() + text.size() || value < least || value > most) {
-    std::fprintf(stderr, "%s: %s expects a whole number from %llu, found '%.*s'\n", program, option,
-                 static_cast<unsigned long long>(least), static_cast<int>(text.size()), text.data());
+    std::fprintf(stderr, "%s: %s expects a whole number from %llu", program, option,
+                 static_cast<unsigned long long>(least));
+    if (most < UINT64_MAX) {
+      std::fprintf(stderr, " to %llu", static_cast<unsigned long long>(most));
+    }
+    std::fprintf(stderr, ", found '%.*s'\n", static_cast<int>(text.size()), text.data());
     std::exit(2);
   }
   return value;

@@ -17,6 +17,7 @@
 
 #include "../../examples/policies.hpp"
 #include "../../examples/cellar.hpp"
+#include "../checked_build.hpp"
 #include "wend/lab/campaign.hpp"
 #include "wend/lab/csv.hpp"
 #include "wend/lab/tally.hpp"
@@ -26,19 +27,7 @@ namespace {
 using namespace wend;
 using lab::Ending;
 
-// Checked or unoptimised code is many times slower: a fiftieth of the runs then.
-#if defined(__has_feature)
-#if __has_feature(address_sanitizer) || __has_feature(thread_sanitizer)
-#define WEND_TEST_CHECKED
-#endif
-#endif
-#if defined(__SANITIZE_ADDRESS__) || defined(__SANITIZE_THREAD__) || defined(WEND_TEST_CHECKED) || \
-    !defined(__OPTIMIZE__)
-constexpr std::uint64_t fewer = 50;
-#else
-constexpr std::uint64_t fewer = 1;
-#endif
-#undef WEND_TEST_CHECKED
+constexpr std::uint64_t fewer = is_slow_build ? 50 : 1;  // that part of the runs
 
 constexpr Loop<decltype(policies::composed)> loop{.policy = policies::composed};
 

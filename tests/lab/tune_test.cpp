@@ -12,6 +12,7 @@
 
 #include "../../examples/policies.hpp"
 #include "../../examples/cellar.hpp"
+#include "../checked_build.hpp"
 #include "wend/lab/campaign.hpp"
 #include "wend/lab/pattern_search.hpp"
 #include "wend/lab/run_row.hpp"
@@ -24,19 +25,7 @@ namespace {
 
 using namespace wend;
 
-// Checked or unoptimised code is many times slower: fewer runs then.
-#if defined(__has_feature)
-#if __has_feature(address_sanitizer) || __has_feature(thread_sanitizer)
-#define WEND_TEST_CHECKED
-#endif
-#endif
-#if defined(__SANITIZE_ADDRESS__) || defined(__SANITIZE_THREAD__) || defined(WEND_TEST_CHECKED) || \
-    !defined(__OPTIMIZE__)
-constexpr std::uint64_t runs_a_candidate = 6;
-#else
-constexpr std::uint64_t runs_a_candidate = 64;
-#endif
-#undef WEND_TEST_CHECKED
+constexpr std::uint64_t runs_a_candidate = is_slow_build ? 6 : 64;
 
 constexpr double infinite = std::numeric_limits<double>::infinity();
 

@@ -12,6 +12,7 @@
 
 #include <doctest/doctest.h>
 
+#include "../checked_build.hpp"
 #include "../../examples/policies.hpp"
 #include "wend/lab/csv.hpp"
 #include "wend/lab/simulate.hpp"
@@ -22,18 +23,7 @@ using namespace wend;
 
 constexpr double width = 56.0;  // metres, of the mapped plot
 constexpr double depth = 38.0;
-// Checked or unoptimised code is ten times slower: a tenth of the runs then.
-#if defined(__has_feature)
-#if __has_feature(address_sanitizer)
-#define WEND_TEST_CHECKED
-#endif
-#endif
-#if defined(__SANITIZE_ADDRESS__) || defined(WEND_TEST_CHECKED) || !defined(__OPTIMIZE__)
-constexpr int runs = 100;
-#else
-constexpr int runs = 1000;
-#endif
-#undef WEND_TEST_CHECKED
+constexpr int runs = is_slow_build ? 100 : 1000;
 
 constexpr double clear = 0.8;  // metres from the body's edge, at start and goal
 
