@@ -70,6 +70,40 @@ inline std::string name_of(std::string_view drawing) {
 // On a map the solid, dark stroke comes first: the others drown in the hatching.
 inline Stroke const& stroke_on_map(std::size_t i) { return strokes[(i + 3) % strokes.size()]; }
 
+// The cells of a map on a sheet, which may show more than the map does. Colours may be overruled by the page, by class.
+struct SvgCells {
+  std::string svg;
+  std::string hatched;  // fill of the undecided ones
+  std::string clip;  // attribute that keeps what has it within the map
+};
+
+// `also` tells two drawings of one page apart that may have the same cells: one that is not shown lends no pattern.
+inline SvgCells svg_cells(Sheet const& sheet, ArrivalMap const& map, std::string const& also = {}) {
+  CellGrid const& grid = map.grid;
+  double const x = sheet.x(grid.low().x());
+  double const y = sheet.y(grid.high().y());
+  double const across = (grid.high().x() - grid.low().x()) * sheet.scale();
+  double const down = (grid.high().y() - grid.low().y()) * sheet.scale();
+  std::string const area = " x=\"" + fixed(x, 2) + "\" y=\"" + fixed(y, 2) + "\" width=\"" + fixed(across, 2) +
+                           "\" height=\"" + fixed(down, 2) + "\"";
+  std::string const undecided = outline(map, Arrival::undecided);
+  std::string const name = name_of(area + undecided + also);
+  SvgCells cells{{}, "url(#" + name + "-hatched)", "clip-path=\"url(#" + name + "-area)\""};
+  // The pattern keeps to pixels, so it does not fill the cells, which are scaled: they cut it out.
+  std::string const place = "transform=\"translate(" + fixed(x, 2) + " " + fixed(y, 2) + ") scale(" +
+                            fixed(across / grid.count().x, 6) + " " + fixed(down / grid.count().y, 6) +
+                            ")\" shape-rendering=\"crispEdges\"";
+  cells.svg = "<defs><pattern id=\"" + name + "-hatched\" width=\"8\" height=\"8\" " +
+              "patternUnits=\"userSpaceOnUse\" patternTransform=\"rotate(45)\"><rect class=\"between\" width=\"8\" " +
+              "height=\"8\" fill=\"#f8efdc\"/><rect class=\"hatch\" width=\"2\" height=\"8\" " +
+              "fill=\"#d8b483\"/></pattern><clipPath id=\"" + name + "-area\"><rect" + area +
+              "/></clipPath><clipPath id=\"" + name + "-undecided\"><path " + place + " d=\"" + undecided +
+              "\"/></clipPath></defs>\n<rect class=\"proved\"" + area + " fill=\"#d3e6e0\"/>\n<rect" + area +
+              " fill=\"" + cells.hatched + "\" clip-path=\"url(#" + name + "-undecided)\"/>\n" +
+              "<path class=\"blocked\" fill=\"#5b5a57\" " + place + " d=\"" + outline(map, Arrival::blocked) + "\"/>\n";
+  return cells;
+}
+
 }  // namespace detail
 
 /// The map with the discs and the goal on it, runs if any, and a legend with the shares. Proved cells are plain,
@@ -81,28 +115,9 @@ inline Stroke const& stroke_on_map(std::size_t i) { return strokes[(i + 3) % str
   using detail::fixed;
   CellGrid const& grid = map.grid;
   detail::Sheet const sheet{grid.low().x(), grid.high().x(), grid.low().y(), grid.high().y(), width};
-  double const across = sheet.x(sheet.right) - sheet.x(sheet.left);
-  std::string const area = " x=\"" + fixed(sheet.x(sheet.left), 2) + "\" y=\"" + fixed(sheet.y(sheet.top), 2) +
-                           "\" width=\"" + fixed(across, 2) + "\" height=\"" + fixed(sheet.height(), 2) + "\"";
-  std::string const undecided = detail::outline(map, Arrival::undecided);
-  std::string const name = detail::name_of(area + undecided);
-  std::string const hatched = "url(#" + name + "-hatched)";
-  std::string svg = detail::svg_head(sheet, title, runs.size() + 4);
-  svg +=
-      "<defs><pattern id=\"" + name +
-      "-hatched\" width=\"8\" height=\"8\" patternUnits=\"userSpaceOnUse\" "
-      "patternTransform=\"rotate(45)\"><rect width=\"8\" height=\"8\" fill=\"#f8efdc\"/><rect width=\"2\" height=\"8\" "
-      "fill=\"#d8b483\"/></pattern><clipPath id=\"" +
-      name + "-area\"><rect" + area + "/></clipPath>";
-  // The pattern keeps to pixels, so it does not fill the cells, which are scaled: they cut it out.
-  std::string const place = "transform=\"translate(" + fixed(sheet.x(sheet.left), 2) + " " +
-                            fixed(sheet.y(sheet.top), 2) + ") scale(" + fixed(across / grid.count().x, 6) + " " +
-                            fixed(sheet.height() / grid.count().y, 6) + ")\" shape-rendering=\"crispEdges\"";
-  svg += "<clipPath id=\"" + name + "-undecided\"><path " + place + " d=\"" + undecided + "\"/></clipPath></defs>\n";
-  svg += "<rect" + area + " fill=\"#d3e6e0\"/>\n<rect" + area + " fill=\"" + hatched + "\" clip-path=\"url(#" + name +
-         "-undecided)\"/>\n<path fill=\"#5b5a57\" " + place + " d=\"" + detail::outline(map, Arrival::blocked) +
-         "\"/>\n";
-  svg += detail::svg_axes(sheet) + "<g clip-path=\"url(#" + name + "-area)\">\n" + detail::svg_discs(sheet, world);
+  detail::SvgCells const cells = detail::svg_cells(sheet, map);
+  std::string svg = detail::svg_head(sheet, title, runs.size() + 4) + cells.svg;
+  svg += detail::svg_axes(sheet) + "<g " + cells.clip + ">\n" + detail::svg_discs(sheet, world);
   for (std::size_t i = 0; i < runs.size(); ++i) {
     svg += detail::svg_run(sheet, runs[i].run, detail::stroke_on_map(i));
     if (!runs[i].run.ticks.empty()) {
@@ -123,7 +138,7 @@ inline Stroke const& stroke_on_map(std::size_t i) { return strokes[(i + 3) % str
   double const proved = std::floor(1000.0 * map.share(Arrival::proved)) / 10.0;  // rounded down: no more than is proved
   double const rest = map.share(Arrival::proved) + map.share(Arrival::undecided) > 0.0 ? 100.0 - proved : 0.0;
   swatch(0, "#d3e6e0", "proved: every path from here ends at the goal, " + fixed(proved) + " %" + of);
-  swatch(1, hatched, "undecided, " + fixed(rest) + " %" + (turns ? "; drawn where for some heading" : ""));
+  swatch(1, cells.hatched, "undecided, " + fixed(rest) + " %" + (turns ? "; drawn where for some heading" : ""));
   swatch(2, "#5b5a57", "blocked: the machine would touch a disc");
   for (std::size_t i = 0; i < runs.size(); ++i) {
     svg += detail::svg_run_legend(sheet, 3 + i, runs[i], detail::stroke_on_map(i), !world.discs.empty());

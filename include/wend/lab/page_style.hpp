@@ -38,7 +38,7 @@ svg text { font: 13px system-ui, sans-serif; fill: var(--soft); }
 .chart text { font-size: 18px; }
 .map, .chart { display: block; width: 100%; height: auto; }
 .map .sheet { fill: var(--paper); } .map .proved { fill: var(--proved); } .map .between { fill: var(--between); }
-.map .hatch { stroke: var(--hatch); stroke-width: 2; } .map .blocked { fill: var(--blocked); }
+.map .hatch { fill: var(--hatch); } .map .blocked { fill: var(--blocked); }
 .map .axes { stroke: var(--rule); } .map .discs { fill: var(--disc); stroke: var(--edge); }
 .map .run .ends * { stroke: var(--ink); stroke-width: 2; }
 .map .run polyline { fill: none; stroke: var(--p3); stroke-width: 2.2; stroke-dasharray: none; }

@@ -131,23 +131,7 @@ inline std::string map_svg(Review const& review, PolicyReview const& policy, std
       "\" data-x=\"" + fixed(sheet.x(0.0), 3) + "\" data-y=\"" + fixed(sheet.y(0.0), 3) + "\" data-scale=\"" +
       fixed(sheet.scale(), 5) + "\">\n<rect class=\"sheet\" width=\"640\" height=\"" + fixed(bottom, 0) + "\"/>\n";
   if (policy.arrivals) {
-    CellGrid const& grid = policy.arrivals->grid;
-    double const x = sheet.x(grid.low().x());
-    double const y = sheet.y(grid.high().y());
-    double const w = (grid.high().x() - grid.low().x()) * sheet.scale();
-    double const h = (grid.high().y() - grid.low().y()) * sheet.scale();
-    std::string const area = " x=\"" + fixed(x, 2) + "\" y=\"" + fixed(y, 2) + "\" width=\"" + fixed(w, 2) +
-                             "\" height=\"" + fixed(h, 2) + "\"";
-    std::string const place = "transform=\"translate(" + fixed(x, 2) + " " + fixed(y, 2) + ") scale(" +
-                              fixed(w / grid.count().x, 6) + " " + fixed(h / grid.count().y, 6) +
-                              ")\" shape-rendering=\"crispEdges\"";
-    std::string const id = "undecided-" + std::to_string(number);
-    svg += "<defs><pattern id=\"" + id + "-lines\" width=\"8\" height=\"8\" patternUnits=\"userSpaceOnUse\" " +
-           "patternTransform=\"rotate(45)\"><rect class=\"between\" width=\"8\" height=\"8\"/><line class=\"hatch\" " +
-           "x1=\"1\" x2=\"1\" y2=\"8\"/></pattern><clipPath id=\"" + id + "\"><path " + place + " d=\"" +
-           outline(*policy.arrivals, Arrival::undecided) + "\"/></clipPath></defs>\n<rect class=\"proved\"" + area +
-           "/>\n<rect fill=\"url(#" + id + "-lines)\" clip-path=\"url(#" + id + ")\"" + area +
-           "/>\n<path class=\"blocked\" " + place + " d=\"" + outline(*policy.arrivals, Arrival::blocked) + "\"/>\n";
+    svg += svg_cells(sheet, *policy.arrivals, std::to_string(number)).svg;
   }
   svg += svg_axes(sheet);
   World still;
