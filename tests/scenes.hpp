@@ -23,6 +23,18 @@ inline constexpr int disc_count = 4;
 inline constexpr float nan = std::numeric_limits<float>::quiet_NaN();
 inline constexpr float infinity = std::numeric_limits<float>::infinity();
 
+/// A field that is told what to want.
+struct told {
+  wend::Parameter x;
+  wend::Parameter y;
+  wend::Parameter confidence = 1.0F;
+  wend::Parameter speed_share = 1.0F;
+  template <wend::Number S, int N>
+  [[nodiscard]] constexpr wend::Course<S> operator()(wend::Percept<S, N> const&) const noexcept {
+    return wend::course_along(wend::Vec2<S>(S(x), S(y)), S(confidence), S(speed_share));
+  }
+};
+
 /// One machine's scene as plain numbers, before it is put on the number under test.
 struct Plain {
   std::array<float, 2> position{0.0F, 0.0F};

@@ -9,6 +9,7 @@
 
 #include <doctest/doctest.h>
 
+#include "../rows.hpp"
 #include "wend/lab/statistics.hpp"
 #include "wend/lab/tally.hpp"
 
@@ -27,15 +28,6 @@ double binomial_up_to(std::uint64_t k, std::uint64_t n, long double p) {
                     static_cast<long double>(i) * std::log(p) + static_cast<long double>(n - i) * std::log1p(-p));
   }
   return static_cast<double>(sum);
-}
-
-lab::RunRow row(std::uint64_t run, Ending ending, double time, double clearance) {
-  lab::RunRow r;
-  r.run = run;
-  r.ending = ending;
-  r.time = time;
-  r.least_clearance = clearance;
-  return r;
 }
 
 }  // namespace

@@ -10,9 +10,10 @@
 
 #include <doctest/doctest.h>
 
-#include "../../examples/policies.hpp"
 #include "../../examples/cellar.hpp"
+#include "../../examples/policies.hpp"
 #include "../checked_build.hpp"
+#include "../rows.hpp"
 #include "wend/lab/campaign.hpp"
 #include "wend/lab/pattern_search.hpp"
 #include "wend/lab/run_row.hpp"
@@ -79,15 +80,6 @@ bool same_values(std::vector<lab::TuneCandidate> const& a, std::vector<lab::Tune
                              x.outcome.mean_time == y.outcome.mean_time && x.violation == y.violation &&
                              x.outcome.clearance == y.outcome.clearance;
                     });
-}
-
-lab::RunRow row(std::uint64_t run, lab::Ending ending, double time, double clearance) {
-  lab::RunRow result;
-  result.run = run;
-  result.ending = ending;
-  result.time = time;
-  result.least_clearance = clearance;
-  return result;
 }
 
 }  // namespace

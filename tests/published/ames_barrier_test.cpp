@@ -188,17 +188,6 @@ double nearest_allowed(std::vector<Constraint> all, wend::Vec2<double> const& wi
   return least;
 }
 
-// Wants a direction, for a share of the speed.
-struct told {
-  wend::Parameter x;
-  wend::Parameter y;
-  wend::Parameter speed_share;
-  template <wend::Number S, int N>
-  [[nodiscard]] constexpr wend::Course<S> operator()(wend::Percept<S, N> const&) const noexcept {
-    return wend::course_along(wend::Vec2<S>(S(x), S(y)), S(0.75F), S(speed_share));
-  }
-};
-
 enum class Discs { stand, drift_together, one_moves };
 
 struct Kept {
@@ -309,8 +298,8 @@ TEST_CASE("the filter solves the quadratic programme exactly, as a search of all
       scene.discs = bundle.discs;
     }
     double const angle = random.between(-3.2, 3.2);
-    told const field{static_cast<float>(std::cos(angle)), static_cast<float>(std::sin(angle)),
-                     static_cast<float>(random.between(0.0, 1.0))};
+    scenes::told const field{static_cast<float>(std::cos(angle)), static_cast<float>(std::sin(angle)), 0.75F,
+                             static_cast<float>(random.between(0.0, 1.0))};
     auto const wanted = scenes::answer(field, scene);
     wend::Vec2<double> const wish = velocity(wanted);
     auto const all = constraints(scene);

@@ -13,17 +13,7 @@
 
 namespace {
 
-// A field that is told what to want.
-struct told {
-  wend::Parameter x;
-  wend::Parameter y;
-  wend::Parameter confidence;
-  wend::Parameter speed_share = 1.0F;
-  template <wend::Number S, int N>
-  [[nodiscard]] constexpr wend::Course<S> operator()(wend::Percept<S, N> const&) const noexcept {
-    return wend::course_along(wend::Vec2<S>(S(x), S(y)), S(confidence), S(speed_share));
-  }
-};
+using scenes::told;
 
 wend::Vec2<double> velocity(wend::Course<double> const& course) { return course.direction * course.confidence; }
 

@@ -16,6 +16,8 @@
 
 namespace {
 
+using scenes::told;
+
 constexpr float threshold = 0.4F;
 constexpr auto along = wend::sliding(threshold, 0.1F, wend::away_from_discs{}, wend::toward_goal{});
 
@@ -32,18 +34,6 @@ scenes::Scene<double> scene_at(double bearing, double clearance) {
 }
 
 wend::Vec2<double> velocity(wend::Course<double> const& course) { return course.direction * course.confidence; }
-
-// A field that is told what to want.
-struct told {
-  wend::Parameter x;
-  wend::Parameter y;
-  wend::Parameter confidence = 1.0F;
-  wend::Parameter speed_share = 1.0F;
-  template <wend::Number S, int N>
-  [[nodiscard]] constexpr wend::Course<S> operator()(wend::Percept<S, N> const&) const noexcept {
-    return wend::course_along(wend::Vec2<S>(S(x), S(y)), S(confidence), S(speed_share));
-  }
-};
 
 }  // namespace
 

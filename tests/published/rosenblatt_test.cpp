@@ -16,16 +16,7 @@
 
 namespace {
 
-struct told {
-  wend::Parameter x;
-  wend::Parameter y;
-  wend::Parameter confidence = 1.0F;
-  wend::Parameter speed_share = 1.0F;
-  template <wend::Number S, int N>
-  [[nodiscard]] constexpr wend::Course<S> operator()(wend::Percept<S, N> const&) const noexcept {
-    return wend::course_along(wend::Vec2<S>(S(x), S(y)), S(confidence), S(speed_share));
-  }
-};
+using scenes::told;
 
 constexpr double pi = std::numbers::pi;
 

@@ -10,6 +10,8 @@
 #include <string_view>
 #include <type_traits>
 
+#include "wend/lab/utf8.hpp"
+
 namespace wend::inline v0::lab {
 
 /// A text in the making. Members and elements are separated as needed; that what is opened is closed, and that only
@@ -106,32 +108,10 @@ class JsonText {
     fresh_ = false;
   }
 
-  // Bytes of one character of UTF-8 (Unicode, table 3-7), 0 where they are none.
-  static std::size_t character(std::string_view text) {
-    auto const at = [&text](std::size_t i) { return i < text.size() ? static_cast<unsigned char>(text[i]) : 0U; };
-    auto const follows = [&at](std::size_t i, unsigned low = 0x80, unsigned high = 0xBF) {
-      return at(i) >= low && at(i) <= high;
-    };
-    unsigned const lead = at(0);
-    if (lead < 0x80) {
-      return 1;
-    }
-    if (lead >= 0xC2 && lead <= 0xDF) {
-      return follows(1) ? 2 : 0;
-    }
-    if (lead >= 0xE0 && lead <= 0xEF) {
-      return follows(1, lead == 0xE0 ? 0xA0 : 0x80, lead == 0xED ? 0x9F : 0xBF) && follows(2) ? 3 : 0;
-    }
-    if (lead >= 0xF0 && lead <= 0xF4) {
-      return follows(1, lead == 0xF0 ? 0x90 : 0x80, lead == 0xF4 ? 0x8F : 0xBF) && follows(2) && follows(3) ? 4 : 0;
-    }
-    return 0;
-  }
-
   void quote(std::string_view text) {
     text_ += '"';
     while (!text.empty()) {
-      std::size_t const size = character(text);
+      std::size_t const size = detail::utf8_size(text);
       unsigned const c = static_cast<unsigned char>(text.front());
       if (size == 0) {
         text_ += "\\ufffd";

@@ -40,33 +40,6 @@ struct NumberRange {
   }
 };
 
-// A file that some program wrote in an encoding of its own may hold any bytes. True where they are UTF-8 (RFC 3629,
-// section 4): no overlong form, no surrogate, nothing over U+10FFFF.
-[[nodiscard]] inline bool is_utf8(std::string_view text) {
-  std::size_t more = 0;  // bytes that the character goes on for
-  unsigned low = 0x80;   // what the next of them may be
-  unsigned high = 0xBF;
-  for (char const c : text) {
-    unsigned const byte = static_cast<unsigned char>(c);
-    if (more > 0) {
-      if (byte < low || byte > high) {
-        return false;
-      }
-      --more;
-      low = 0x80;
-      high = 0xBF;
-    } else if (byte >= 0x80) {
-      if (byte < 0xC2 || byte > 0xF4) {
-        return false;
-      }
-      more = byte >= 0xF0 ? 3 : byte >= 0xE0 ? 2 : 1;
-      low = byte == 0xE0 ? 0xA0 : byte == 0xF0 ? 0x90 : 0x80;
-      high = byte == 0xED ? 0x9F : byte == 0xF4 ? 0x8F : 0xBF;
-    }
-  }
-  return more == 0;
-}
-
 // A line taken apart at blanks, up to a '#'. Throws FileError for a line that is too long or holds control characters.
 class SceneLine {
  public:

@@ -16,6 +16,7 @@
 #include "wend/lab/scene_line.hpp"
 #include "wend/lab/scene_parts.hpp"
 #include "wend/lab/scene_words.hpp"
+#include "wend/lab/utf8.hpp"
 #include "wend/lab/world.hpp"
 #include "wend/plane.hpp"
 
