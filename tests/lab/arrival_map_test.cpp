@@ -673,7 +673,7 @@ TEST_CASE("the picture covers each cell once, tells the kinds apart by a pattern
   auto const [undecided, pieces] = area_of(between(between(svg, "-undecided\">", "/>"), " d=\"", "\""));
   CHECK(undecided == std::count(map.cells.begin(), map.cells.end(), Arrival::undecided));
   CHECK(pieces < 6000);
-  auto const [blocked, rows] = area_of(between(between(svg, "<path fill=\"#5b5a57\"", "/>"), " d=\"", "\""));
+  auto const [blocked, rows] = area_of(between(between(svg, "<path class=\"blocked\"", "/>"), " d=\"", "\""));
   CHECK(blocked == std::count(map.cells.begin(), map.cells.end(), Arrival::blocked));
   CHECK(rows < 1000);
   // What is hatched is cut out by the cells, and the legend shows the same.

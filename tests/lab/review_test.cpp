@@ -5,6 +5,7 @@
 #include <cmath>
 #include <cstddef>
 #include <cstdint>
+#include <set>
 #include <string>
 #include <vector>
 
@@ -57,7 +58,9 @@ lab::Review small_review(int threads, std::atomic<bool> const* stop = nullptr) {
   lab::Claims const claims{.keeps_clear = 0.0, .seen_within = 0.01, .arrives = 0.5, .contacts = 0.2};
   lab::add_review(review, "two, \"thresholds\"", policies::two_thresholds, cellar::ring, cellar::cart(), drawn, claims,
                   options);
-  lab::add_review(review, "</style><b>blend", policies::blended, cellar::ring, cellar::cart(), drawn, claims, options);
+  // Of the same type as the first, which halves what is compiled.
+  constexpr auto other = guarded(below(clearance, 0.35F, 0.35F), past_disc{}, toward_goal{});
+  lab::add_review(review, "</style><b>blend", other, cellar::ring, cellar::cart(), drawn, claims, options);
   return review;
 }
 
@@ -114,6 +117,12 @@ TEST_CASE("the page holds all there is, needs nothing from elsewhere, and lets n
   CHECK(page.find("make &amp; &lt;again&gt;") != std::string::npos);
   CHECK(count(page, "</style>") == 1);
   CHECK(count(page, "</script>") == 2);
+  // What two maps call their patterns differs, though their cells may be the same.
+  std::set<std::string> names;
+  for (std::size_t at = page.find("<pattern id=\""); at != page.npos; at = page.find("<pattern id=\"", at + 1)) {
+    names.insert(page.substr(at, page.find("-hatched", at) - at));
+  }
+  CHECK(names.size() == 2);
   // A section a policy; a map with three runs and three charts in each; a text for every picture.
   CHECK(count(page, "<section class=\"policy\"") == 2);
   CHECK(count(page, "<svg class=\"map\"") == 2);
