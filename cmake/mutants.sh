@@ -139,9 +139,7 @@ try() { # try <place> <a line of the list>: "killed", "survived" or "broken"
       -o "$dir/test.o" 2>/dev/null; then
       continue
     fi
-    support=
-    grep -q field_checks.hpp "$test" && support=$work/field_checks.o
-    $cxx "$dir/test.o" $support "$work/main.o" -o "$dir/test" -pthread 2>/dev/null || continue
+    $cxx "$dir/test.o" "$work/field_checks.o" "$work/dense.o" "$work/main.o" -o "$dir/test" -pthread 2>/dev/null || continue
     verdict=survived
     if ! timeout 60 "$dir/test" >/dev/null 2>&1; then
       verdict=killed
@@ -158,7 +156,9 @@ try() { # try <place> <a line of the list>: "killed", "survived" or "broken"
   rm -rf "$dir"
 }
 
-$cxx $flags -include "$work/common.hpp" -I include -I tests -c tests/field_checks.cpp -o "$work/field_checks.o"
+for support in field_checks dense; do
+  $cxx $flags -include "$work/common.hpp" -I include -I tests -c tests/$support.cpp -o "$work/$support.o"
+done
 
 worker() { # worker <k>: every jobs-th change
   awk -v k="$1" -v jobs="$jobs" 'NR % jobs == k' "$work/chosen" >"$work/mine.$1"

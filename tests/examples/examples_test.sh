@@ -69,18 +69,7 @@ runs.csv
 two-thresholds.csv
 two-thresholds.svg'
 
-# The statements about all states take seconds, and minutes where every instruction is watched.
-if [ -z "${WEND_QUICK:-}" ]; then
-  run review --out proved --runs 2000
-  check 'review: exit code 0 with statements' ended_with 0
-  check 'review: all four are proved to keep clear' are_equal 4 "$(sed -n '/^keeps 1.0 cm clear/,/^$/p' stdout |
-    grep -cE '^  (hard switch|two thresholds|blend|composed) +holds +[0-9]+ boxes')"
-  check 'review: writes the same files with statements' are_equal "$files" "$(LC_ALL=C ls -A proved)"
-  check 'review: draws the arrival map under a run' grep -q 'every path from here ends at the goal' proved/blend.svg
-  check 'review: the picture in the README is what it draws' cmp -s proved/blend.svg "$scenes/../review/blend.svg"
-  check 'review: the page has four maps' are_equal 4 "$(grep -o '<svg class="map"' proved/review.html | wc -l)"
-fi
-
+# With the statements about all states, which take seconds, it is run and looked at by tests/readme/.
 run review --out once --runs-only --runs 300 --threads 1
 check 'review: exit code 0' ended_with 0
 for policy in 'hard switch' 'two thresholds' blend composed; do

@@ -4,11 +4,14 @@
 #include <cmath>
 #include <complex>
 #include <cstddef>
+#include <random>
 #include <stdexcept>
+#include <utility>
 #include <vector>
 
 #include <doctest/doctest.h>
 
+#include "../dense.hpp"
 #include "wend/arbiters/blend.hpp"
 #include "wend/arbiters/guarded.hpp"
 #include "wend/arbiters/signal.hpp"
@@ -69,6 +72,37 @@ struct linear {
 
 }  // namespace
 
+TEST_CASE("eigenvalues of two by two matrices are those of Eigen's eigensolver") {
+  std::mt19937_64 draw(3);
+  std::uniform_real_distribution<double> entry(-1.0, 1.0);
+  std::uniform_int_distribution<int> power(-30, 30), form(0, 4);
+  int pairs = 0;
+  for (int i = 0; i < 5000; ++i) {
+    Eigen::Matrix2d a;
+    a << entry(draw), entry(draw), entry(draw), entry(draw);
+    switch (form(draw)) {
+      case 0: a(1, 0) = a(0, 1); break;
+      case 1: a(1, 0) = 0.0, a(1, 1) = a(0, 0); break;  // one value, one eigenvector
+      case 2: a.row(1) = 0.25 * a.row(0); break;        // no inverse
+      case 3: a(0, 0) *= std::ldexp(1.0, power(draw)); break;
+      default: break;
+    }
+    auto const ours = lab::detail::eigenvalues_of(a);
+    Eigen::VectorXcd theirs = dense::spectrum(a).values;
+    if (std::pair(theirs(1).real(), -theirs(1).imag()) < std::pair(theirs(0).real(), -theirs(0).imag())) {
+      std::swap(theirs(0), theirs(1));
+    }
+    pairs += theirs(0).imag() != 0.0 ? 1 : 0;
+    double const apart = std::abs(theirs(0) - theirs(1));  // the closer they are, the more rounding moves them
+    for (int k = 0; k < 2; ++k) {
+      double const error = std::abs(ours[static_cast<std::size_t>(k)] - theirs(k));
+      CHECK(error * std::max(error, apart) <= 1e-14 * a.squaredNorm());
+    }
+  }
+  CHECK(pairs > 500);
+  CHECK(lab::detail::eigenvalues_of(Eigen::Matrix2d::Zero())[1] == 0.0);
+}
+
 TEST_CASE("equilibria finds nothing but the goal where there is no disc") {
   Equilibria const e = equilibria(drawn, World{}, {3.0, 0.5}, hall);
   REQUIRE(e.points.size() == 1);
@@ -111,8 +145,8 @@ TEST_CASE("equilibria finds three saddles behind three discs") {
   CHECK(e.found_index == 1 - 3);
   CHECK(e.complete());
   for (lab::WorldDisc const& d : world.discs) {
-    Vec2<double> const expected =
-        d.disc.centre - balance_from_centre(d.disc.radius) * (goal - d.disc.centre).normalized();
+    Vec2<double> const expected = d.disc.centre -
+                                  balance_from_centre(d.disc.radius) * (goal - d.disc.centre).normalized();
     CHECK(std::any_of(e.points.begin(), e.points.end(),
                       [&expected](auto const& point) { return (point.position - expected).norm() < 1e-12; }));
   }
@@ -134,9 +168,8 @@ TEST_CASE("a saddle that equilibria has no budget to find shows in the sum of th
     bool const found = std::any_of(e.points.begin(), e.points.end(), [&missed](auto const& point) {
       return (point.position - missed.position).norm() < 1e-9;
     });
-    bool const in_doubt = std::any_of(e.unresolved.begin(), e.unresolved.end(), [&missed](auto const& u) {
-      return lab::detail::holds(u.box, missed.position);
-    });
+    bool const in_doubt = std::any_of(e.unresolved.begin(), e.unresolved.end(),
+                                      [&missed](auto const& u) { return lab::detail::holds(u.box, missed.position); });
     CHECK((found || in_doubt));
   }
 }
@@ -181,8 +214,8 @@ TEST_CASE("equilibria tells kinds and eigenvalues of linear flows") {
     std::complex<double> const root = std::sqrt(std::complex<double>(trace * trace - 4.0 * determinant));
     CHECK(e.points[0].index == (determinant > 0.0 ? 1 : -1));
     for (std::complex<double> const& expected : {0.5 * (trace - root), 0.5 * (trace + root)}) {
-      CHECK(std::min(std::abs(e.points[0].eigenvalues[0] - expected),
-                     std::abs(e.points[0].eigenvalues[1] - expected)) < 1e-7);
+      CHECK(std::min(std::abs(e.points[0].eigenvalues[0] - expected), std::abs(e.points[0].eigenvalues[1] - expected)) <
+            1e-7);
     }
   }
 }

@@ -7,10 +7,9 @@
 #include <complex>
 
 #include <doctest/doctest.h>
+#include <Eigen/LU>
 
-#include <Eigen/Dense>
-#include <Eigen/Eigenvalues>
-
+#include "../dense.hpp"
 #include "wend/sensing/constant_velocity.hpp"
 
 using wend::ConstantVelocity;
@@ -42,12 +41,12 @@ Eigen::Matrix2d riccati(Model const& m) {
   Eigen::Matrix2d const back = a.inverse().transpose();
   Eigen::Matrix4d z;
   z << a + hh * back * m.q, -hh * back, -back * m.q, back;
-  Eigen::EigenSolver<Eigen::Matrix4d> const solver(z);
+  dense::Spectrum const all = dense::spectrum(z);
   Eigen::Matrix<std::complex<double>, 4, 2> stable;
   int found = 0;
   for (int i = 0; i < 4 && found < 2; ++i) {
-    if (std::abs(solver.eigenvalues()(i)) < 1.0) {
-      stable.col(found++) = solver.eigenvectors().col(i);
+    if (std::abs(all.values(i)) < 1.0) {
+      stable.col(found++) = all.vectors.col(i);
     }
   }
   REQUIRE(found == 2);

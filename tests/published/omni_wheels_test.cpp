@@ -12,8 +12,7 @@
 
 #include <doctest/doctest.h>
 
-#include <Eigen/Dense>
-
+#include "../dense.hpp"
 #include "wend/motion/omni.hpp"
 
 using wend::Omni;
@@ -64,7 +63,7 @@ TEST_CASE("the body velocity from rates is that of the pseudo-inverse") {
     for (int i = 0; i < wheels; ++i) {
       right(i) = given.rates[static_cast<std::size_t>(i)] = std::sin(1.7 * i + 0.3) * 5.0;
     }
-    Eigen::Vector3d const expected = jacobian.completeOrthogonalDecomposition().solve(right);
+    Eigen::Vector3d const expected = dense::least_squares(jacobian, right);
     PlanarVelocity<double> const body = machine.body(given);
     CHECK(body.speed == doctest::Approx(expected(0)).epsilon(1e-6));
     CHECK(body.lateral == doctest::Approx(expected(1)).epsilon(1e-6));

@@ -1,6 +1,7 @@
 #!/bin/sh
 # readme_test.sh SOURCE BUILD COMPILER EIGEN - holds README.md to the code: every block of C++ in it compiles or is the file it
-# says it is, every printed output is what its program prints, and every name of ours that it mentions exists.
+# says it is, every printed output is what its program prints, the page and picture of that are what they have to be, and
+# every name of ours that it mentions exists.
 #
 # A comment on the line above a block says how it is checked:
 #   <!-- same as FILE -->              the block is that file, but for the comment at its top
@@ -84,13 +85,14 @@ while read -r number line language how; do
       set -- ${how#* * }
       program=$build/examples/$1
       shift
-      (cd "$work" && "$program" "$@" >"$work/said" 2>&1) || fail "$what: $program ends with an error"
+      said=$work/said.$number
+      (cd "$work" && "$program" "$@" >"$said" 2>&1) || fail "$what: $program ends with an error"
       case $how in
-        printed*) cmp -s "$work/said" "$block" && echo "ok: $what is what $program prints" ||
-          { diff "$block" "$work/said" | head -n 10; fail "$what is not what $program prints"; } ;;
+        printed*) cmp -s "$said" "$block" && echo "ok: $what is what $program prints" ||
+          { diff "$block" "$said" | head -n 10; fail "$what is not what $program prints"; } ;;
         *)
           if awk 'NR == FNR { wanted[++n] = $0; next } k < n && $0 == wanted[k + 1] { ++k }
-                  END { if (k < n) { print "not printed: " wanted[k + 1]; exit 1 } }' "$block" "$work/said"; then
+                  END { if (k < n) { print "not printed: " wanted[k + 1]; exit 1 } }' "$block" "$said"; then
             echo "ok: $what is in what $program prints"
           else
             fail "$what is not in what $program prints"
@@ -102,6 +104,20 @@ while read -r number line language how; do
     *) fail "$what: the line above the block has to say how it is checked" ;;
   esac
 done <"$work/blocks"
+
+# --- The review that it shows: its four proofs, its page, its picture. -----------------------------------------------------
+
+holds() { # holds <what> <command...>
+  what=$1
+  shift
+  if "$@"; then echo "ok: $what"; else fail "$what"; fi
+}
+out=$work/review-out
+holds 'all four are proved to keep clear' sh -c 'cat "$1"/said.* | sed -n "/^keeps 1.0 cm clear/,/^\$/p" |
+  grep -E "^  (hard switch|two thresholds|blend|composed) +holds +[0-9]+ boxes" | { [ "$(wc -l)" -eq 4 ]; }' - "$work"
+holds 'the page has four maps' sh -c '[ "$(grep -o "<svg class=\"map\"" "$1" | wc -l)" -eq 4 ]' - "$out/review.html"
+holds 'the arrival map is under the run' grep -q 'every path from here ends at the goal' "$out/blend.svg"
+holds 'the picture is what review draws' cmp "$out/blend.svg" examples/review/blend.svg
 
 # --- Names: what stands in backticks and looks like one of ours has to be one. --------------------------------------------
 

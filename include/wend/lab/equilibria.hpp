@@ -12,7 +12,7 @@
 #include <vector>
 
 #include <Eigen/Core>
-#include <Eigen/Eigenvalues>
+#include <Eigen/LU>
 
 #include "wend/lab/dual.hpp"
 #include "wend/lab/interval.hpp"
@@ -47,10 +47,10 @@ struct Equilibrium {
 
 /// Why a place could not be settled.
 enum class Doubt : std::uint8_t {
-  jump,        ///< the course jumps there, and may do so through zero: where fields are switched, a resting place
+  jump,  ///< the course jumps there, and may do so through zero: where fields are switched, a resting place
   degenerate,  ///< it vanishes or nearly does, and more cannot be said
   no_opinion,  ///< the policy has no opinion in the whole box
-  budget,      ///< not looked at closely enough for want of budget
+  budget,  ///< not looked at closely enough for want of budget
 };
 
 /// A cluster of boxes in which the course may vanish. Outside of all of them and off the points found it does not.
@@ -63,12 +63,12 @@ struct Unresolved {
 
 /// What `equilibria` found, and whether that is all there is.
 struct Equilibria {
-  std::vector<Equilibrium> points;     ///< by x, then y
+  std::vector<Equilibrium> points;  ///< by x, then y
   std::vector<Unresolved> unresolved;  ///< where there may be more; empty when nothing is in doubt
-  std::optional<int> boundary_index;   ///< sum of all indices by the boundary; none if the course vanishes on it
-  int found_index = 0;                 ///< the sum over `points` and the unresolved whose index is known
-  bool index_agrees = false;           ///< both sums are known and equal
-  std::int64_t boxes = 0;              ///< looked at
+  std::optional<int> boundary_index;  ///< sum of all indices by the boundary; none if the course vanishes on it
+  int found_index = 0;  ///< the sum over `points` and the unresolved whose index is known
+  bool index_agrees = false;  ///< both sums are known and equal
+  std::int64_t boxes = 0;  ///< looked at
 
   /// Nothing is missing, and nothing in doubt.
   [[nodiscard]] bool complete() const noexcept { return index_agrees && unresolved.empty(); }
@@ -76,11 +76,11 @@ struct Equilibria {
 
 /// Of which machine, and how hard to try.
 struct EquilibriaOptions {
-  Parameter robot_radius = 0.20F;       ///< metres
-  double keep_off = 0.0;                ///< metres: places with less clearance are not looked at
-  double finest = 0.001;                ///< metres: boxes no larger are not split
-  double goal_radius = 0.01;            ///< metres: see `equilibria`
-  Vec2<double> heading{1.0, 0.0};       ///< of the nose, for policies that ask
+  Parameter robot_radius = 0.20F;  ///< metres
+  double keep_off = 0.0;  ///< metres: places with less clearance are not looked at
+  double finest = 0.001;  ///< metres: boxes no larger are not split
+  double goal_radius = 0.01;  ///< metres: see `equilibria`
+  Vec2<double> heading{1.0, 0.0};  ///< of the nose, for policies that ask
   std::int64_t box_budget = 400'000;  ///< boxes to look at, at the most
   int threads = 1;  ///< 1 or more, that look at boxes side by side
 };
@@ -97,13 +97,27 @@ template <typename Policy, int Capacity>
 [[nodiscard]] Flow flow_at(Policy const& policy, StillWorld<Capacity> const& world,
                            DiscSet<Dual<2>, Capacity> const& discs, Vec2<double> const& point) {
   using D = Dual<2>;
-  Course<D> const course =
-      world.course(policy, Vec2<D>{D::variable(point.x(), 0), D::variable(point.y(), 1)}, discs);
+  Course<D> const course = world.course(policy, Vec2<D>{D::variable(point.x(), 0), D::variable(point.y(), 1)}, discs);
   Vec2<D> const v = scaled(course.direction, course.confidence);
   Flow flow;
   flow.value << v.x().value(), v.y().value();
   flow.slope << v.x().slope(0), v.x().slope(1), v.y().slope(0), v.y().slope(1);
   return flow;
+}
+
+// The roots of x^2 - trace x + determinant, smaller real part first. Two real ones come from the larger, by their
+// product: their difference would cancel (Higham 2002, Accuracy and stability of numerical algorithms, section 1.8).
+[[nodiscard]] inline std::array<std::complex<double>, 2> eigenvalues_of(Eigen::Matrix2d const& a) {
+  double const middle = 0.5 * (a(0, 0) + a(1, 1));
+  double const half = 0.5 * (a(0, 0) - a(1, 1));
+  double const square = half * half + a(0, 1) * a(1, 0);
+  if (square < 0.0) {
+    double const turning = std::sqrt(-square);
+    return {std::complex<double>{middle, turning}, std::complex<double>{middle, -turning}};
+  }
+  double const larger = middle + std::copysign(std::sqrt(square), middle);
+  double const smaller = larger == 0.0 ? 0.0 : a.determinant() / larger;
+  return {std::min(larger, smaller), std::max(larger, smaller)};
 }
 
 // Newton's method from the middle of a region; none when it leaves the region or does not settle.
@@ -140,11 +154,7 @@ template <typename Policy, int Capacity>
   }
   Equilibrium e;
   e.position = point;
-  Eigen::EigenSolver<Eigen::Matrix2d> const solver(flow.slope, false);
-  e.eigenvalues = {solver.eigenvalues()[0], solver.eigenvalues()[1]};
-  if (e.eigenvalues[1].real() < e.eigenvalues[0].real()) {
-    std::swap(e.eigenvalues[0], e.eigenvalues[1]);
-  }
+  e.eigenvalues = eigenvalues_of(flow.slope);
   double const low = e.eigenvalues[0].real();
   double const high = e.eigenvalues[1].real();
   double const determinant = flow.slope.determinant();
@@ -154,11 +164,11 @@ template <typename Policy, int Capacity>
     return e;
   }
   e.index = determinant > 0.0 ? 1 : -1;
-  e.kind = determinant < 0.0                                ? EquilibriumKind::saddle
+  e.kind = determinant < 0.0                                                                 ? EquilibriumKind::saddle
            : std::abs(high) <= nothing * flow.slope.norm() && e.eigenvalues[0].imag() != 0.0 ? EquilibriumKind::centre
-           : high < 0.0                                     ? EquilibriumKind::sink
-           : low > 0.0                                      ? EquilibriumKind::source
-                                                            : EquilibriumKind::degenerate;
+           : high < 0.0                                                                      ? EquilibriumKind::sink
+           : low > 0.0                                                                       ? EquilibriumKind::source
+                       : EquilibriumKind::degenerate;
   return e;
 }
 
@@ -243,8 +253,8 @@ template <int Capacity = 32, typename Policy>
       Region const around = detail::grown(doubtful.box, 2.0 * options.finest);
       constexpr std::size_t most_hulls = 2'000;  // beyond, nobody reads the list, and comparing all with all is slow
       bool const alone = gathered.size() <= most_hulls && detail::alone(hulls, i, around);
-      std::optional<int> const turns =
-          alone ? winding_number(map, boundary(around.low, around.high, {}), shortest) : std::nullopt;
+      std::optional<int> const turns = alone ? winding_number(map, boundary(around.low, around.high, {}), shortest)
+                                             : std::nullopt;
       std::optional<Equilibrium> found = detail::refine(policy, still, around);
       if (found && found->kind == EquilibriumKind::degenerate) {
         found->index = turns.value_or(0);
